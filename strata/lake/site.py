@@ -68,6 +68,8 @@ class Spring:
     salinity: float  # g/kg
     dissolved: Mapping[str, float]  # mol/m3 by tracer name: DIC, alkalinity, CH4, phosphate, ...
     ports: int = 1  # number of outlets it leaves by, each an entraining plume
+    port_diameter: float = 1.0  # m
+    port_spacing: float = 50.0  # m
     spread: tuple[float, float] | None = None  # m, enters evenly over this interval instead
 
 
@@ -127,6 +129,7 @@ class Mixing:
     wind_efficiency: float = 1.25  # of the wind's stirring (Kraus & Turner 1967)
     convection_efficiency: float = 0.2  # of the energy set free by cooling
     drag_coefficient: float = 1.3e-3
+    overshoot: float = 1.0  # share of the laboratory's entrainment where a plume overshoots (Baines 1975)
 
 
 @dataclass(frozen=True)

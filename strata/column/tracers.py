@@ -1,0 +1,49 @@
+"""Which column of the state is which tracer, said once.
+
+Potential temperature [degC] and salinity [g/kg] come first, then concentrations [mol m-3]
+(alkalinity in equivalents), then any number of passive tags [share of the water].
+"""
+
+from collections.abc import Sequence
+
+TEMPERATURE = 0
+SALINITY = 1
+DIC = 2
+ALKALINITY = 3
+CALCIUM = 4
+METHANE = 5
+NITROGEN = 6
+OXYGEN = 7
+SULFIDE = 8
+PHOSPHATE = 9
+
+#: Names of the tracers every column carries, in the order of its columns.
+TRACERS = (
+    "temperature",
+    "salinity",
+    "DIC",
+    "alkalinity",
+    "calcium",
+    "CH4",
+    "N2",
+    "O2",
+    "H2S",
+    "phosphate",
+)
+FIRST_TAG = len(TRACERS)
+
+
+def names(tags: Sequence[str] = ()) -> tuple[str, ...]:
+    """Return the names of all columns of a state that carries the given tags."""
+    return TRACERS + tuple(tags)
+
+
+def index(name: str, tags: Sequence[str] = ()) -> int:
+    """Return the column of a tracer or tag.
+
+    Raises
+    ------
+    ValueError
+        If there is no such tracer.
+    """
+    return names(tags).index(name)

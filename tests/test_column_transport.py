@@ -1,0 +1,184 @@
+"""Advection and diffusion of the column against exact solutions and their own promises."""
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from scipy.special import erfc, j0, jn_zeros
+
+from strata.column.transport import advect, diffuse_euler, face_weights
+
+YEAR = 3.15576e7  # s
+DAY = 86400.0
+
+
+def carry(values, flow, volume, conductance, inflow, dt, steps):
+    """Carry values on with an open foot (given inflow) and an open top."""
+    count, tracers = values.shape
+    weight, start = face_weights(volume)
+    edge, flux = np.empty((count + 1, tracers)), np.empty((count + 1, tracers))
+    ratio, change = np.empty_like(values), np.empty_like(values)
+    for _ in range(steps):
+        lost = flow[0] * values[0] * dt
+        advect(values, flow, volume, weight, start, dt, edge, flux)
+        values[0] -= lost / volume[0]
+        values[-1] += flow[-1] * inflow * dt / volume[-1]
+        if conductance is not None:
+            diffuse_euler(values, conductance, volume, dt, ratio, change)
+
+
+def layer_means_of(function, faces, points=40):
+    """Return layer means of a function by a fine midpoint rule."""
+    share = (np.arange(points) + 0.5) / points
+    z = faces[:-1, None] + share * np.diff(faces)[:, None]
+    return function(z).mean(axis=1)
+
+
+def spread_of(values, depth):
+    """Return the variance of the slope of a front about its middle [m2]."""
+    slope, z = np.diff(values), 0.5 * (depth[1:] + depth[:-1])
+    middle = np.sum(slope * z) / np.sum(slope)
+    return np.sum(slope * (z - middle) ** 2) / np.sum(slope), middle
+
+
+def front_run(faces, kappa, years=100.0, speed=1.0 / YEAR, width=2.0, at=220.0):
+    """Carry an erf front up a cylinder; return what came out, what is exact, and the spurious K."""
+    volume, depth = np.diff(faces), 0.5 * (faces[1:] + faces[:-1])
+    early = width**2 / (4 * kappa)
+
+    def exact(time):
+        return lambda z: 0.5 * erfc(
+            -(z - (at - speed * time)) / np.sqrt(4 * kappa * (time + early))
+        )
+
+    values = layer_means_of(exact(0.0), faces)[:, None].copy()
+    flow = np.full(len(faces), speed)
+    distance = np.concatenate([[1.0], np.diff(depth), [1.0]])
+    conductance = (kappa / distance)[:, None]
+    end = years * YEAR
+    steps = round(end / DAY)
+    carry(values, flow, volume, conductance, np.ones(1), end / steps, steps)
+    wanted = layer_means_of(exact(end), faces)
+    have, there = spread_of(values[:, 0], depth)
+    should, where = spread_of(wanted, depth)
+    return values[:, 0], wanted, (have - should) / (2 * end), there - where
+
+
+@pytest.mark.parametrize(
+    ("step", "kappa", "most"),
+    # goals of the design: a gradient carried 100 m in 100 years keeps its shape
+    [(1.0, 1e-9, 1e-10), (2.0, 1e-8, 5e-11)],
+)
+def test_a_front_carried_for_a_century_spreads_by_its_own_diffusivity_alone(step, kappa, most):
+    values, _, spurious, shift = front_run(np.arange(0.0, 300.0 + step, step), kappa)
+    assert abs(spurious) <= most
+    assert abs(shift) < 1e-6  # m; a finite-volume scheme moves the first moment exactly
+    assert values.min() >= -1e-12
+    assert values.max() <= 1 + 1e-12
+
+
+def test_a_front_keeps_its_shape_across_layers_that_change_thickness():
+    # 1 m layers on the path of the front, 4 m elsewhere, changing by at most 1.25 from one to the
+    # next; same goal as on even layers
+    thick = [4.0]
+    while sum(thick) < 300:
+        middle = sum(thick) + thick[-1] / 2
+        goal = 1.0 if 95 < middle < 245 else 4.0
+        thick.append(np.clip(goal, thick[-1] / 1.25, thick[-1] * 1.25))
+    faces = np.concatenate([[0.0], np.cumsum(thick)])
+    values, wanted, spurious, _ = front_run(faces, 1e-9)
+    assert abs(spurious) <= 1e-10
+    assert np.abs(values - wanted).max() < 0.03  # of the step of 1
+    assert values.min() >= -1e-12
+    assert values.max() <= 1 + 1e-12
+
+
+def test_face_values_are_of_sixth_order_on_uneven_layers():
+    errors = []
+    for count in (20, 40, 80):
+        raw = np.linspace(0, 1, count + 1) + 0.2 / count * np.sin(np.arange(count + 1) * 1.7)
+        faces = (raw - raw[0]) / (raw[-1] - raw[0]) * 2 * np.pi
+        mean = (np.cos(faces[:-1]) - np.cos(faces[1:])) / np.diff(faces)
+        weight, start = face_weights(np.diff(faces))
+        value = np.array(
+            [weight[f] @ mean[start[f] : start[f] + 6] for f in range(count + 1)]
+        )
+        errors.append(np.abs(value - np.sin(faces)).max())
+    orders = np.log2(np.array(errors[:-1]) / errors[1:])
+    print("observed order of the face values:", orders)
+    assert orders.min() > 5.0  # one-sided at the ends, where the largest error is
+
+
+def test_diffusion_in_a_closed_cylinder_follows_the_cosine_solution():
+    errors = []
+    height, kappa = 100.0, 1e-6
+    for count in (25, 50, 100):
+        faces = np.linspace(0, height, count + 1)
+        time = height**2 / kappa / 20
+        steps = 16 * (count // 25) ** 2  # first order in time, second in space
+        values = layer_means_of(lambda z: 1 + np.cos(np.pi * z / height), faces)[:, None]
+        conductance = np.full((count + 1, 1), kappa / (height / count))
+        ratio, change = np.empty_like(values), np.empty_like(values)
+        for _ in range(steps):
+            diffuse_euler(values, conductance, np.diff(faces), time / steps, ratio, change)
+        fade = np.exp(-kappa * (np.pi / height) ** 2 * time)
+        exact = layer_means_of(lambda z: 1 + fade * np.cos(np.pi * z / height), faces)
+        errors.append(np.abs(values[:, 0] - exact).max())
+    orders = np.log2(np.array(errors[:-1]) / errors[1:])
+    print("observed order of diffusion in space:", orders)
+    assert orders.min() > 1.9  # second order
+
+
+def test_diffusion_in_a_basin_of_linear_area_follows_the_bessel_solution():
+    # with x = 1 - z/h and area A0 x, A dc/dt = d/dz(A K dc/dz) is Bessel's equation in x: the
+    # modes without flux through the surface are J0(j x), J1(j) = 0, and fade at K j^2 / h^2
+    height, kappa = 100.0, 1e-6
+    root = float(jn_zeros(1, 1)[0])
+    errors = []
+    for count in (25, 50, 100):
+        faces = np.linspace(0, height, count + 1)
+        x = 1 - faces / height
+        volume = height * (x[:-1] ** 2 - x[1:] ** 2) / 2
+        middle = 0.5 * (faces[1:] + faces[:-1])
+        values = j0(root * (1 - middle / height))[:, None].copy()
+        time = height**2 / kappa / root**2
+        steps = 16 * (count // 25) ** 2
+        conductance = (x * kappa / (height / count))[:, None].copy()
+        ratio, change = np.empty_like(values), np.empty_like(values)
+        for _ in range(steps):
+            diffuse_euler(values, conductance, volume, time / steps, ratio, change)
+        exact = np.exp(-1) * j0(root * (1 - middle / height))
+        inner = slice(0, count - 2)  # the tip holds no water to speak of
+        errors.append(np.abs(values[inner, 0] - exact[inner]).max())
+    orders = np.log2(np.array(errors[:-1]) / errors[1:])
+    print("observed order of diffusion in a cone of linear area:", orders)
+    assert orders.min() > 1.7
+
+
+@given(st.integers(0, 10_000))
+@settings(max_examples=30, deadline=None)
+def test_random_fields_make_no_new_extreme_and_lose_nothing(seed):
+    rng = np.random.default_rng(seed)
+    count = int(rng.integers(8, 60))
+    volume = rng.uniform(0.2, 5.0, count)
+    values = rng.uniform(0.0, 20.0, (count, 3))
+    low, high, held = values.min(axis=0), values.max(axis=0), volume @ values
+    flow = rng.uniform(-1.0, 1.0) * np.ones(count + 1)
+    flow[0] = flow[-1] = 0.0
+    weight, start = face_weights(volume)
+    edge, flux = np.empty((count + 1, 3)), np.empty((count + 1, 3))
+    before = values.copy()
+    advect(values, flow, volume, weight, start, 0.15, edge, flux)
+    np.testing.assert_allclose(volume @ values, held, rtol=1e-13)
+    # away from the ends, where water piles up against the closed faces
+    inner = slice(1, -1)
+    span = high - low
+    assert np.all(values[inner] >= before.min(axis=0) - 1e-12 * span)
+    assert np.all(values[inner] <= before.max(axis=0) + 1e-12 * span)
+    conductance = 10 ** rng.uniform(-6, 6, (count + 1, 3))
+    values = before.copy()
+    ratio, change = np.empty_like(values), np.empty_like(values)
+    diffuse_euler(values, conductance, volume, 1.0, ratio, change)
+    np.testing.assert_allclose(volume @ values, held, rtol=1e-11)
+    assert np.all(values >= low - 1e-12 * span)
+    assert np.all(values <= high + 1e-12 * span)

@@ -1,0 +1,212 @@
+"""How the casts of the demo lake were made: its own supply, run to a steady state, then measured.
+
+Run from the checkout with ``python scripts/make_demo_lake.py``.  Starting from a rough guess, the
+lake of ``profiles/lake.toml`` is left alone for thousands of years under its own climate, springs
+and bed, until no tracer anywhere drifts by more than a small share of its range in a century.  A
+survey is then drawn from that state as an instrument would see it: a CTD at 1 m and water samples
+at some twenty depths, each with its noise.  Nothing in a projection pulls the lake back to these
+casts.
+"""
+
+import argparse
+import shutil
+import tempfile
+from datetime import date
+from pathlib import Path
+
+import numpy as np
+from scipy.interpolate import PchipInterpolator
+from scipy.signal import find_peaks
+
+import strata
+from strata import clock
+from strata.column.column import Column
+from strata.column.start import first_day
+from strata.column.tracers import DIC, TRACERS
+from strata.compiled import broadcast
+from strata.coupling import Fleet
+from strata.projection import carry_on
+from strata.water.density import in_situ_temperature
+
+HERE = Path(__file__).parent.parent / "profiles"
+SEED = 20260101
+
+#: A rough lake to begin with: foot of each body of water [m] and what it holds.
+GUESS = [
+    # foot, degC, g/kg, CO2, alkalinity, CH4, N2, O2, H2S, phosphate [mol or eq per m3]
+    (62, 23.3, 1.15, 0.02, 14.5, 0.0, 0.5, 0.23, 0.0, 0.0005),
+    (95, 22.7, 1.6, 1.0, 20.0, 0.3, 0.5, 0.0, 0.02, 0.005),
+    (205, 23.0, 2.0, 4.0, 25.0, 2.0, 0.5, 0.0, 0.05, 0.01),
+    (290, 24.2, 3.9, 50.0, 48.0, 11.0, 0.5, 0.0, 0.1, 0.03),
+    (400, 25.4, 5.6, 88.0, 70.0, 17.5, 0.5, 0.0, 0.2, 0.05),
+]
+GAS_COLUMNS = ("CO2", "alkalinity", "CH4", "N2", "O2", "H2S", "phosphate")
+#: Stated error of a sample: share of the value and least amount [mol or eq per m3].
+SAMPLE_ERROR = {
+    "CO2": (0.015, 0.01),
+    "alkalinity": (0.005, 0.02),
+    "CH4": (0.015, 0.005),
+    "N2": (0.02, 0.0),
+    "O2": (0.02, 0.002),
+    "H2S": (0.03, 0.001),
+    "phosphate": (0.02, 0.00005),
+}
+TEMPERATURE_ERROR, SALINITY_ERROR = 0.002, 0.002  # degC, g/kg, one standard deviation
+
+
+def write_ctd(path: Path, depth, temperature, salinity, day: str) -> None:
+    """Write a CTD cast."""
+    lines = [
+        f"# Lake survey of {day}, invented: CTD lowered from the surface, averaged over 1 m",
+        "# standard deviation of the instrument: see the lake file",
+        "depth_m,temperature_degC,salinity_g_kg",
+    ]
+    lines += [
+        f"{z:g},{t:.4f},{s:.4f}" for z, t, s in zip(depth, temperature, salinity, strict=True)
+    ]
+    path.write_text("\n".join(lines) + "\n")
+
+
+def write_samples(path: Path, depth, values: dict[str, np.ndarray], day: str) -> None:
+    """Write the water samples with the error of each."""
+    units = {name: "eq_m3" if name == "alkalinity" else "mol_m3" for name in values}
+    heads = ["depth_m"]
+    for name in values:
+        heads += [f"{name}_{units[name]}", f"{name}_error_{units[name]}"]
+    lines = [
+        f"# Lake survey of {day}, invented: water samples under pressure; CO2 is free CO2",
+        ",".join(heads),
+    ]
+    for row, z in enumerate(depth):
+        cells = [f"{z:g}"]
+        for name, value in values.items():
+            share, least = SAMPLE_ERROR[name]
+            error = max(share * abs(value[row]), least)
+            cells += [f"{value[row]:.5g}", f"{error:.2g}"]
+        lines.append(",".join(cells))
+    path.write_text("\n".join(lines) + "\n")
+
+
+def write_guess(folder: Path, day: str) -> None:
+    """Write casts of the rough lake, so that its file can be loaded."""
+    depth = np.arange(0.0, 401.0, 1.0)
+    feet = np.array([row[0] for row in GUESS])
+    table = np.array([row[1:] for row in GUESS])
+    profile = np.zeros((len(depth), table.shape[1])) + table[0]
+    for upper, foot in enumerate(feet[:-1]):
+        share = 0.5 * (1 + np.tanh((depth - foot) / 4.0))
+        profile += share[:, None] * (table[upper + 1] - table[upper])
+    write_ctd(folder / "ctd.csv", depth, profile[:, 0], profile[:, 1], day)
+    at = np.unique(np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 390])
+    samples = {
+        name: np.interp(at, depth, profile[:, 2 + k]) for k, name in enumerate(GAS_COLUMNS)
+    }
+    write_samples(folder / "samples.csv", at, samples, day)
+
+
+def settle(column: Column, years: int, step_days: float) -> None:
+    """Leave a column alone for whole years."""
+    alone = Fleet(None, column.lake)
+    begin = date(2000, 1, 1)
+    year = clock.spans(begin, date(2001, 1, 1), [])
+    for _ in range(years):
+        for span in year:
+            carry_on(column, alone, span, begin, step_days)
+
+
+def spin_up(lake, most: int, step_days: float, tolerance: float, values=None) -> Column:
+    """Run a lake until its largest drift per century, relative to each range, is small."""
+    column = Column(lake, first_day(lake) if values is None else values)
+    done = 0
+    while done < most:
+        before = column.values.copy()
+        settle(column, 100, step_days)
+        done += 100
+        span = np.ptp(column.values, axis=0)
+        drift = np.abs(column.values - before).max(axis=0) / np.where(span > 0, span, 1)
+        worst = int(np.argmax(drift))
+        print(
+            f"{done} years: largest drift {100 * drift[worst]:.2f} % of its range per century"
+            f" ({TRACERS[worst]}), books {column.ledger_error().max():.1e}",
+            flush=True,
+        )
+        if drift.max() < tolerance:
+            break
+    return column
+
+
+def sample_depths(column: Column) -> np.ndarray:
+    """Return depths for water samples: across every gradient, and between them."""
+    z, stability = column.basin.faces[1:-1], column.seen.stability[1:-1]
+    peaks, _ = find_peaks(stability, prominence=2e-6, distance=5)
+    wanted = [1.0, 20.0, 390.0]
+    edges = []
+    for peak in peaks:
+        inside = np.flatnonzero(stability > 0.1 * stability[peak])
+        near = inside[(inside > peak - 40) & (inside < peak + 40)]
+        top, foot = z[near[0]], z[near[-1]]
+        edges += [top, foot]
+        wanted += [top - 2, z[peak] - 2, z[peak] + 2, foot + 2]
+    edges = sorted([0.0, *edges, 400.0])
+    wanted += [0.5 * (a + b) for a, b in zip(edges, edges[1:], strict=False) if b - a > 25]
+    depths = np.unique(np.round(np.clip(wanted, 1.0, 395.0)))
+    keep = [depths[0]]
+    for depth in depths[1:]:
+        if depth - keep[-1] >= 3:
+            keep.append(depth)
+    return np.array(keep)
+
+
+def survey(column: Column, folder: Path, day: str) -> None:
+    """Draw the casts that a survey of a column would bring home."""
+    rng = np.random.Generator(np.random.Philox(SEED))
+    middle, values = column.basin.depth, column.values
+
+    def at(depth, profile):
+        return np.maximum(
+            PchipInterpolator(middle, profile)(np.clip(depth, middle[0], middle[-1])), 0.0
+        )
+
+    depth = np.arange(0.0, 400.0, 1.0)
+    in_situ = broadcast(in_situ_temperature)(values[:, 0], column.pressure)
+    temperature = at(depth, in_situ) + rng.normal(0, TEMPERATURE_ERROR, len(depth))
+    salinity = at(depth, values[:, 1]) + rng.normal(0, SALINITY_ERROR, len(depth))
+    write_ctd(folder / "ctd.csv", depth, temperature, salinity, day)
+    where = sample_depths(column)
+    taken = {}
+    for name in GAS_COLUMNS:
+        true = column.free_co2() if name == "CO2" else values[:, TRACERS.index(name)]
+        share, least = SAMPLE_ERROR[name]
+        exact = at(where, true)
+        noise = rng.normal(0, 1, len(where)) * np.maximum(share * exact, np.minimum(least, exact))
+        taken[name] = np.maximum(exact + noise, 0.0)
+    write_samples(folder / "samples.csv", where, taken, day)
+
+
+def main() -> None:
+    """Make the casts of the demo lake."""
+    parser = argparse.ArgumentParser(description=__doc__)
+    parser.add_argument("--years", type=int, default=6000, help="longest spin-up")
+    parser.add_argument("--step-days", type=float, default=5.0)
+    parser.add_argument("--out", type=Path, default=HERE, help="folder for the casts")
+    parser.add_argument("--from", dest="state", type=Path, help="state (.npy) to go on from")
+    parser.add_argument("--keep", type=Path, help="where to keep the steady state (.npy)")
+    options = parser.parse_args()
+    with tempfile.TemporaryDirectory() as folder:
+        copy = Path(folder)
+        shutil.copy(HERE / "lake.toml", copy)
+        for extra in HERE.glob("*.csv"):
+            shutil.copy(extra, copy)
+        write_guess(copy, "2026-01-01")
+        lake = strata.load_lake(copy / "lake.toml")
+    start = np.load(options.state) if options.state else None
+    column = spin_up(lake, options.years, options.step_days, 0.005, start)
+    settle(column, 5, 1.0)  # the last years with the step of a projection
+    if options.keep:
+        np.save(options.keep, column.values)
+    survey(column, options.out, lake.site.start.isoformat())
+    print("DIC from", column.values[:, DIC].min(), "to", column.values[:, DIC].max(), "mol/m3")
+
+
+if __name__ == "__main__":
+    main()

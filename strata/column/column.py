@@ -1,0 +1,468 @@
+"""The column of a lake as an object: its state, its books, and how it is carried on.
+
+The compiled loop of :mod:`strata.column.kernel` does the work; this holds its arrays, refreshes
+what is held between visits of the clock, and words what the loop could not do.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from strata.column import kernel
+from strata.column.streams import Give, Source, Surroundings, follow, spread_evenly, stack
+from strata.column.surface import transfer_velocity, wind_power
+from strata.column.tracers import (
+    ALKALINITY,
+    DIC,
+    METHANE,
+    NITROGEN,
+    OXYGEN,
+    SALINITY,
+    SULFIDE,
+    TEMPERATURE,
+    index,
+    names,
+)
+from strata.column.transport import face_weights
+from strata.compiled import broadcast
+from strata.errors import ComputationError
+from strata.gas import air
+from strata.gas.carbonate import carbonate_constants_of, free_co2
+from strata.gas.diffusivity import gas_diffusivity, schmidt_number
+from strata.lake.basin import Basin, build_basin
+from strata.lake.site import Lake, River, Spring
+from strata.species import SPECIES
+from strata.water import density as water_density
+from strata.water import transport as water_transport
+from strata.water.stability import standard_gravity
+
+Array = NDArray[np.float64]
+
+#: Turns heat into kelvin and wind stress into friction velocity, the same everywhere in a run:
+#: fresh water near 23 degC (Fofonoff & Millard 1983), so that the books of heat close.
+REFERENCE_DENSITY = 998.0  # kg m-3
+REFERENCE_HEAT_CAPACITY = 4180.0  # J kg-1 K-1
+#: Largest relative error of the books that a run may end with.
+LEDGER_TOLERANCE = 1e-10
+#: Gases in the order of the kernel's masses and volumes.
+GASES = ("CO2", "CH4", "N2", "O2", "H2S")
+#: Free gases that cross the surface, by tracer column.
+AT_SURFACE = {DIC: "CO2", METHANE: "CH4", NITROGEN: "N2", OXYGEN: "O2", SULFIDE: "H2S"}
+
+
+@dataclass(frozen=True)
+class Weather:
+    """What the air does during one visit."""
+
+    equilibrium_temperature: float  # degC
+    exchange_coefficient: float  # W m-2 K-1
+    wind_speed: float  # m/s
+    rain: float  # m/s
+    evaporation: float  # m/s
+
+
+class Column:
+    """A column that can be carried on in time.
+
+    Parameters
+    ----------
+    lake : Lake
+        The site and all that acts on it.
+    values : ndarray, shape (n, m)
+        Tracers of the layers in the order of :func:`strata.column.tracers.names`.
+    tags : sequence of str
+        Names of the passive tracers behind the standard ones.
+    """
+
+    def __init__(self, lake: Lake, values: Array, tags: Sequence[str] = ()) -> None:
+        self.lake = lake
+        self.tags = tuple(tags)
+        self.basin: Basin = build_basin(lake.hypsography, lake.layer_faces)
+        self.gravity = standard_gravity(lake.site.latitude)
+        self.tracers = names(tags)
+        values = np.array(values, dtype=np.float64, order="C")
+        self.molar_mass = np.array([SPECIES[gas].molar_mass for gas in GASES])
+        self.molar_volume = np.array(
+            [lake.site.co2_molar_volume]
+            + [SPECIES[gas].molar_volume for gas in GASES[1:]]
+        )
+        self.hydrogen = np.full(self.basin.layers, 1e-4)
+        self.face_pressure, self.pressure = self._hydrostatic(values)
+        self.grid = self._grid()
+        self.state = kernel.State(
+            values=values,
+            hydrogen=self.hydrogen,
+            mixed_depth=np.array([self.basin.faces[1]]),
+            books=np.zeros((len(kernel.LEDGER_TERMS), len(self.tracers))),
+            taken=np.zeros((0, len(self.tracers))),
+        )
+        self.start = self.inventory()
+        self.turnover = np.zeros(len(self.tracers))
+        count = self.basin.layers + 1
+        self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
+        self.refresh()
+
+    @property
+    def values(self) -> Array:
+        """Return the tracers of the layers, (n, m)."""
+        return self.state.values
+
+    def inventory(self) -> Array:
+        """Return the content of the lake for every tracer [tracer unit times m3]."""
+        return self.basin.volume @ self.state.values
+
+    def ledger_error(self) -> Array:
+        """Return what the books miss, relative to the start and all that passed."""
+        missing = self.start + self.state.books.sum(axis=0) - self.inventory()
+        scale = np.abs(self.start) + np.abs(self.state.books).sum(axis=0)
+        return np.where(scale > 0, np.abs(missing) / np.where(scale > 0, scale, 1.0), 0.0)
+
+    def check_ledger(self) -> None:
+        """Refuse to go on if the books of any tracer do not close.
+
+        Raises
+        ------
+        strata.ComputationError
+            With the tracer and the size of the fault.
+        """
+        error = self.ledger_error()
+        if not np.all(error <= LEDGER_TOLERANCE):
+            worst = int(np.argmax(error))
+            raise ComputationError(
+                f"the books of {self.tracers[worst]} are off by {error[worst]:.1e} of what was"
+                f" there and passed; {LEDGER_TOLERANCE:.0e} is allowed"
+            )
+
+    def _hydrostatic(self, values: Array) -> tuple[Array, Array]:
+        """Return absolute pressure [Pa] at the faces and the middles of the layers."""
+        basin, site = self.basin, self.lake.site
+        pressure = site.air_pressure + 1000.0 * self.gravity * basin.depth
+        face = site.air_pressure + 1000.0 * self.gravity * basin.faces
+        for _ in range(3):
+            constants = self._carbonate_constants(values, pressure)
+            mass, space = self._gas_load(values, constants)
+            rho = broadcast(water_density.parcel_density)(
+                values[:, TEMPERATURE],
+                values[:, SALINITY],
+                pressure,
+                mass,
+                space,
+                site.haline_contraction,
+            )
+            face = site.air_pressure + np.concatenate(
+                [[0.0], np.cumsum(rho * self.gravity * basin.thickness)]
+            )
+            pressure = 0.5 * (face[1:] + face[:-1])
+        return face, pressure
+
+    def _carbonate_constants(self, values: Array, pressure: Array) -> Array:
+        """Return (n, 3) conditional constants of the carbonate system of the layers."""
+        in_situ = broadcast(water_density.in_situ_temperature)(values[:, TEMPERATURE], pressure)
+        site = self.lake.site
+        return carbonate_constants_of(
+            in_situ,
+            values[:, SALINITY],
+            values[:, ALKALINITY],
+            pressure,
+            site.magnesium_share,
+            site.calcium_share,
+        )
+
+    def _gas_load(self, values: Array, constants: Array) -> tuple[Array, Array]:
+        """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases."""
+        mass, space = np.empty(len(values)), np.empty(len(values))
+        kernel.gas_load(
+            values, constants, self.hydrogen, self.molar_mass, self.molar_volume, mass, space
+        )
+        return mass, space
+
+    def _grid(self) -> kernel.Grid:
+        """Return what never changes in a run, as the kernel wants it."""
+        basin, lake = self.basin, self.lake
+        weight, start = face_weights(basin.volume)
+        distance = np.concatenate([[1.0], np.diff(basin.depth), [1.0]])
+        mixing, rates = lake.mixing, lake.reactions
+        return kernel.Grid(
+            volume=basin.volume,
+            area=basin.area,
+            bed_area=basin.bed_area,
+            face=basin.faces,
+            depth=basin.depth,
+            distance=distance,
+            weight=weight,
+            start=start,
+            pressure=self.face_pressure,
+            physics=np.array(
+                [self.gravity, lake.site.haline_contraction, mixing.convection_efficiency]
+            ),
+            mixing=np.array([mixing.coefficient, mixing.least, mixing.most, mixing.staircase_step]),
+            rates=np.array(
+                [
+                    rates.methane_oxidation,
+                    rates.half_methane,
+                    rates.half_oxygen,
+                    rates.sulfide_oxidation,
+                    rates.oxygen_demand,
+                    rates.phosphate_removal,
+                ]
+            ),
+            bed_flux=self._bed_flux(),
+            molar_mass=self.molar_mass,
+            molar_volume=self.molar_volume,
+        )
+
+    def _bed_flux(self) -> Array:
+        """Return the flux of each tracer out of the bed of each layer [amount m-2 s-1]."""
+        flux = np.zeros((self.basin.layers, len(self.tracers)))
+        for source in self.lake.bed:
+            share = self.basin.overlap(source.top, source.foot)
+            if source.tracer == "heat":
+                flux[:, TEMPERATURE] += share * source.flux / self.heat_capacity
+            else:
+                flux[:, index(source.tracer)] += share * source.flux
+        return flux
+
+    @property
+    def heat_capacity(self) -> float:
+        """Return the reference heat capacity per volume [J m-3 K-1] that turns heat into kelvin."""
+        return REFERENCE_DENSITY * REFERENCE_HEAT_CAPACITY
+
+    def refresh(self) -> None:
+        """Work out again what is held between visits of the clock."""
+        values = self.values
+        self.constants = self._carbonate_constants(values, self.pressure)
+        face_theta = np.empty(self.basin.layers + 1)
+        face_theta[1:-1] = 0.5 * (values[1:, TEMPERATURE] + values[:-1, TEMPERATURE])
+        face_theta[0], face_theta[-1] = values[0, TEMPERATURE], values[-1, TEMPERATURE]
+        in_situ = broadcast(water_density.in_situ_temperature)(face_theta, self.face_pressure)
+        salinity = np.interp(self.basin.faces, self.basin.depth, values[:, SALINITY])
+        self.expansion = water_density.thermal_expansion(in_situ, salinity, self.face_pressure)
+        self.heat = water_transport.thermal_diffusivity(in_situ)
+        self.viscosity = water_transport.kinematic_viscosity(in_situ)
+        self.molecular = self._molecular(in_situ)
+
+    def _molecular(self, in_situ: Array) -> Array:
+        """Return the molecular diffusivity of each tracer at the faces [m2 s-1].
+
+        DIC moves as free CO2 and bicarbonate, by their shares; ions, phosphate and tags as salt.
+        """
+        salt = water_transport.salt_diffusion(in_situ)
+        molecular = np.repeat(salt[:, None], len(self.tracers), axis=1)
+        molecular[:, TEMPERATURE] = self.heat
+        for column, gas in AT_SURFACE.items():
+            molecular[:, column] = gas_diffusivity(gas, in_situ)
+        co2 = self.free_co2() / np.maximum(self.values[:, DIC], 1e-30)
+        share = np.concatenate([co2[:1], 0.5 * (co2[1:] + co2[:-1]), co2[-1:]])
+        molecular[:, DIC] = share * molecular[:, DIC] + (1.0 - share) * salt
+        return molecular
+
+    def free_co2(self) -> Array:
+        """Return free CO2 of the layers [mol m-3]."""
+        co2, _ = carbonate_pair(self.values, self.constants, self.hydrogen)
+        return co2
+
+    def gas_load(self) -> tuple[Array, Array]:
+        """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases of the layers."""
+        return self._gas_load(self.values, self.constants)
+
+    def surroundings(self) -> Surroundings:
+        """Return the water a plume meets now."""
+        mass, space = self.gas_load()
+        return Surroundings(
+            basin=self.basin,
+            temperature=np.ascontiguousarray(self.values[:, TEMPERATURE]),
+            salinity=np.ascontiguousarray(self.values[:, SALINITY]),
+            gas_mass=mass,
+            gas_volume=space,
+            pressure=self.pressure,
+            haline_contraction=self.lake.site.haline_contraction,
+            gravity=self.gravity,
+        )
+
+    def parcel(self, temperature: float, salinity: float, dissolved, depth: float):
+        """Return potential temperature, gas mass and gas volume of water at a depth.
+
+        ``temperature`` is in situ; ``dissolved`` maps tracer names to mol m-3.
+        """
+        pressure = float(np.interp(depth, self.basin.faces, self.face_pressure))
+        theta = float(
+            broadcast(water_density.potential_temperature)(temperature, pressure)
+        )
+        row = np.zeros((1, len(self.tracers)))
+        row[0, TEMPERATURE], row[0, SALINITY] = theta, salinity
+        for name, amount in dissolved.items():
+            row[0, index(name)] = amount
+        site = self.lake.site
+        constants = carbonate_constants_of(
+            np.array([temperature]),
+            row[:, SALINITY],
+            row[:, ALKALINITY],
+            np.array([pressure]),
+            site.magnesium_share,
+            site.calcium_share,
+        )
+        mass, space = np.empty(1), np.empty(1)
+        kernel.gas_load(
+            row, constants, np.full(1, 1e-4), self.molar_mass, self.molar_volume, mass, space
+        )
+        return row[0], float(mass[0]), float(space[0])
+
+    def spring(self, spring: Spring, around: Surroundings) -> Give:
+        """Return a spring as the kernel holds it: a plume from its outlet, or over its interval."""
+        row, mass, space = self.parcel(
+            spring.temperature, spring.salinity, spring.dissolved, spring.depth
+        )
+        if f"spring_{spring.name}" in self.tags:
+            row[index(f"spring_{spring.name}", self.tags)] = 1.0
+        if spring.spread is not None:
+            given = spread_evenly(spring, self.basin)
+            entrained = np.zeros(self.basin.layers)
+        else:
+            path = follow(
+                Source(
+                    name=f"spring {spring.name}",
+                    depth=spring.depth,
+                    flow=spring.flow,
+                    temperature=row[TEMPERATURE],
+                    salinity=row[SALINITY],
+                    gas_mass=mass,
+                    gas_volume=space,
+                    ports=spring.ports,
+                    port_diameter=spring.port_diameter,
+                    port_spacing=spring.port_spacing,
+                ),
+                around,
+                self.lake.mixing.overshoot,
+            )
+            given, entrained = path.given, path.entrained
+        return Give(
+            kind=kernel.SPRINGS,
+            water=spring.flow,
+            added=spring.flow * row,
+            given=given,
+            entrained=entrained,
+        )
+
+    def river(self, river: River) -> Give:
+        """Return a river as the kernel holds it: into the top layer."""
+        row, _, _ = self.parcel(river.temperature, river.salinity, river.dissolved, 0.0)
+        given = np.zeros(self.basin.layers)
+        given[0] = 1.0
+        return Give(
+            kind=kernel.RIVERS,
+            water=river.flow,
+            added=river.flow * row,
+            given=given,
+            entrained=np.zeros(self.basin.layers),
+        )
+
+    def natural(self, around: Surroundings) -> list[Give]:
+        """Return all springs and rivers as they enter the column as it is."""
+        gives = [self.spring(spring, around) for spring in self.lake.springs]
+        return gives + [self.river(river) for river in self.lake.rivers]
+
+    def _exchange(self, wind_speed: float) -> Array:
+        """Return transfer velocity [m s-1] and concentration at equilibrium with air, per tracer."""
+        surface, site = self.values[0], self.lake.site
+        exchange = np.zeros((len(self.tracers), 2))
+        for column, gas in AT_SURFACE.items():
+            exchange[column, 0] = transfer_velocity(
+                wind_speed, float(schmidt_number(gas, surface[TEMPERATURE]))
+            )
+            exchange[column, 1] = float(
+                air.equilibrium(
+                    gas, surface[TEMPERATURE], surface[SALINITY], site.air_pressure
+                )
+            )
+        return exchange
+
+    def advance(
+        self,
+        weather: Weather,
+        takes: Sequence[Array],
+        gives: Sequence[Give],
+        steps: int,
+        dt: float,
+        reference: Array | None = None,
+    ) -> tuple[bool, int]:
+        """Carry the column on; stop early when the feed of a plant has changed.
+
+        Parameters
+        ----------
+        weather : Weather
+            Held throughout.
+        takes : sequence of ndarray, shape (n,)
+            Withdrawal of each intake from the layers [m3 s-1].
+        gives : sequence of Give
+            Springs, rivers and returns.
+        steps : int
+            Number of steps of ``dt`` seconds.
+        reference : ndarray, shape (takes, m), optional
+            Feeds for which the factors in ``gives`` were found.
+
+        Returns
+        -------
+        early : bool
+            Whether a feed has changed.
+        done : int
+            Steps made.
+
+        Raises
+        ------
+        strata.ComputationError
+            If a value is no longer a number, or more would leave a layer than it holds.
+        """
+        count = len(self.tracers)
+        stacked = stack(takes, gives, self.basin.layers, count)
+        if reference is None:
+            reference = np.full((len(takes), count), np.nan)
+        if len(self.state.taken) != len(takes):
+            self.state = self.state._replace(taken=np.zeros((len(takes), count)))
+        mixing = self.lake.mixing
+        held = kernel.Held(
+            constants=self.constants,
+            molecular=self.molecular,
+            expansion=self.expansion,
+            heat=self.heat,
+            viscosity=self.viscosity,
+            air=np.array(
+                [
+                    weather.equilibrium_temperature,
+                    weather.exchange_coefficient * self.basin.area[0] / self.heat_capacity,
+                    wind_power(
+                        weather.wind_speed,
+                        mixing.wind_efficiency,
+                        mixing.drag_coefficient,
+                        REFERENCE_DENSITY,
+                    ),
+                    weather.rain,
+                    weather.evaporation,
+                ]
+            ),
+            exchange=self._exchange(weather.wind_speed),
+            reference=reference,
+            **stacked.__dict__,
+        )
+        code, done, layer, tracer = kernel.advance(
+            self.state, self.grid, held, self.seen, steps, dt
+        )
+        if code == kernel.NOT_FINITE:
+            raise ComputationError(
+                f"{self.tracers[tracer]} at {self.basin.depth[layer]:.1f} m is no longer a number"
+            )
+        if code == kernel.OVERDRAWN:
+            raise ComputationError(
+                f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a step"
+                " than it can give"
+            )
+        return code == kernel.FEED_CHANGED, int(done)
+
+
+def carbonate_pair(values: Array, constants: Array, hydrogen: Array) -> tuple[Array, Array]:
+    """Return free CO2 and hydrogen ions of rows of tracers [mol m-3]."""
+    co2, ions = np.empty(len(values)), np.empty(len(values))
+    for i, row in enumerate(values):
+        co2[i], ions[i] = free_co2(row[DIC], row[ALKALINITY], *constants[i], hydrogen[i])
+    return co2, ions

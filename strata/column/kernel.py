@@ -1,0 +1,436 @@
+"""The compiled time loop: everything that happens to the column between two visits of the clock.
+
+One step: surface exchange, reactions, springs, plants and the flow they drive, diffusion, then the
+overturning of whatever became unstable.  What changes slowly (constants of the carbonate system,
+expansion, molecular diffusivities, plumes, plant factors) is held between visits.
+"""
+
+from typing import NamedTuple
+
+import numpy as np
+from numpy.typing import NDArray
+
+from strata.column.mixing import (
+    pair_stability,
+    pool,
+    staircase_diffusivity,
+    turbulent_diffusivity,
+)
+from strata.column.reactions import react
+from strata.column.surface import deepen
+from strata.column.tracers import (
+    ALKALINITY,
+    DIC,
+    METHANE,
+    NITROGEN,
+    OXYGEN,
+    SULFIDE,
+    TEMPERATURE,
+)
+from strata.column.transport import advect, diffuse
+from strata.compiled import compiled
+from strata.gas.carbonate import free_co2
+
+Array = NDArray[np.float64]
+
+#: Why the kernel came back.
+DONE, FEED_CHANGED, NOT_FINITE, OVERDRAWN = 0, 1, 2, 3
+
+#: Terms of the ledger, in the order of its rows; each signed, into the lake positive.
+LEDGER_TERMS = (
+    "surface",
+    "rain",
+    "evaporation",
+    "outlet",
+    "rivers",
+    "springs",
+    "bed",
+    "reactions",
+    "intake",
+    "return",
+)
+SURFACE, RAIN, EVAPORATION, OUTLET, RIVERS, SPRINGS, BED, REACTIONS, INTAKE, RETURN = range(10)
+
+#: Feed changes by more than this share: the plant is solved again.
+FEED_TOLERANCE = 0.005
+
+
+class Grid(NamedTuple):
+    """What never changes in a run."""
+
+    volume: Array  # (n,) m3
+    area: Array  # (n + 1,) m2
+    bed_area: Array  # (n,) m2
+    face: Array  # (n + 1,) m
+    depth: Array  # (n,) m
+    distance: Array  # (n + 1,) m between the middles of the layers at a face
+    weight: Array  # (n + 1, points) of the face values
+    start: NDArray[np.int64]  # (n + 1,)
+    pressure: Array  # (n + 1,) Pa at the faces
+    physics: Array  # gravity, haline contraction, convection efficiency
+    mixing: Array  # a, least, most, staircase step
+    rates: Array  # of the reactions, see there
+    bed_flux: Array  # (n, m) amount per bed area and second
+    molar_mass: Array  # CO2, CH4, N2, O2, H2S, kg/mol
+    molar_volume: Array  # the same, m3/mol
+
+
+class Held(NamedTuple):
+    """What is held between two visits of the clock."""
+
+    constants: Array  # (n, 3) k1, k2, kw of the carbonate system
+    molecular: Array  # (n + 1, m) molecular diffusivity, m2/s
+    expansion: Array  # (n + 1,) thermal expansion, 1/K
+    heat: Array  # (n + 1,) molecular diffusivity of heat, m2/s
+    viscosity: Array  # (n + 1,) kinematic, m2/s
+    air: Array  # equilibrium temperature, K A / (rho cp) in m3/s, wind power per area, rain, evaporation
+    exchange: Array  # (m, 2) transfer velocity m/s and concentration at equilibrium with air
+    take: Array  # (j, n) withdrawal from each layer, m3/s
+    link: Array  # (k, j, m) share of take j that goes into give k
+    added: Array  # (k, m) amount added to give k, per second
+    water: Array  # (k,) m3/s: flow of give k but for what it entrains
+    entrained: Array  # (k, n) m3/s taken along on the way
+    given: Array  # (k, n) share of give k that each layer gets
+    kind: NDArray[np.int64]  # (k,) row of the ledger
+    reference: Array  # (j, m) concentration at which the factors were found; NaN: none
+
+
+class State(NamedTuple):
+    """What the run carries on."""
+
+    values: Array  # (n, m)
+    hydrogen: Array  # (n,) last concentration of hydrogen ions, mol/m3
+    mixed_depth: Array  # (1,) m
+    books: Array  # (terms, m) running sums since the start
+    taken: Array  # (j, m) running sums of what each take took
+
+
+class Seen(NamedTuple):
+    """Filled for whoever asks after a visit: faces of the last step."""
+
+    flow: Array  # (n + 1,) upward, m3/s
+    diffusivity: Array  # (n + 1,) of solutes, m2/s
+    stability: Array  # (n + 1,) buoyancy frequency squared, s-2
+
+
+@compiled
+def gas_load(values, constants, hydrogen, molar_mass, molar_volume, gas_mass, gas_volume):
+    """Fill mass [kg m-3] and volume [m3 m-3] of the dissolved gases, refreshing free CO2."""
+    for i in range(values.shape[0]):
+        co2, hydrogen[i] = free_co2(
+            values[i, DIC],
+            values[i, ALKALINITY],
+            constants[i, 0],
+            constants[i, 1],
+            constants[i, 2],
+            hydrogen[i],
+        )
+        ch4, n2, o2, h2s = (
+            values[i, METHANE],
+            values[i, NITROGEN],
+            values[i, OXYGEN],
+            values[i, SULFIDE],
+        )
+        gas_mass[i] = (
+            co2 * molar_mass[0]
+            + ch4 * molar_mass[1]
+            + n2 * molar_mass[2]
+            + o2 * molar_mass[3]
+            + h2s * molar_mass[4]
+        )
+        gas_volume[i] = (
+            co2 * molar_volume[0]
+            + ch4 * molar_volume[1]
+            + n2 * molar_volume[2]
+            + o2 * molar_volume[3]
+            + h2s * molar_volume[4]
+        )
+
+
+@compiled
+def face_flow(held, flow):
+    """Fill the upward flow through the faces [m3 s-1] by continuity and return the largest outflow.
+
+    The lake level is fixed: what enters below a face and does not leave below it passes it.
+    """
+    count = held.take.shape[1]
+    for f in range(count + 1):
+        flow[f] = 0.0
+    for i in range(count - 1, -1, -1):
+        net = 0.0
+        for j in range(held.take.shape[0]):
+            net -= held.take[j, i]
+        for k in range(held.water.shape[0]):
+            total = held.water[k]
+            for n in range(count):
+                total += held.entrained[k, n]
+            net += held.given[k, i] * total - held.entrained[k, i]
+        flow[i] = flow[i + 1] + net
+
+
+@compiled
+def exchange_with_streams(values, grid, held, dt, state, outlet, gain, carried):
+    """Apply takes, gives, entrainment, outlet, rain and evaporation as one change of contents.
+
+    ``gain`` (n, m) and ``carried`` (m) are workspace.
+    """
+    count, tracers = values.shape
+    takes, gives = held.take.shape[0], held.water.shape[0]
+    gain[:, :] = 0.0
+    for k in range(gives):
+        for m in range(tracers):
+            carried[m] = 0.0
+        for i in range(count):
+            flow = held.entrained[k, i]
+            if flow > 0.0:
+                for m in range(tracers):
+                    amount = flow * values[i, m] * dt
+                    carried[m] += amount
+                    gain[i, m] -= amount
+        for j in range(takes):
+            for m in range(tracers):
+                withdrawn = 0.0
+                for i in range(count):
+                    if held.take[j, i] > 0.0:
+                        withdrawn += held.take[j, i] * values[i, m]
+                part = held.link[k, j, m] * withdrawn * dt
+                carried[m] += part
+                state.books[held.kind[k], m] += part
+        for m in range(tracers):
+            part = held.added[k, m] * dt
+            carried[m] += part
+            state.books[held.kind[k], m] += part
+        for i in range(count):
+            share = held.given[k, i]
+            if share > 0.0:
+                for m in range(tracers):
+                    gain[i, m] += share * carried[m]
+    for j in range(takes):
+        for i in range(count):
+            flow = held.take[j, i]
+            if flow > 0.0:
+                for m in range(tracers):
+                    amount = flow * values[i, m] * dt
+                    gain[i, m] -= amount
+                    state.taken[j, m] += amount
+                    state.books[INTAKE, m] -= amount
+    for m in range(tracers):
+        amount = outlet * values[0, m] * dt
+        gain[0, m] -= amount
+        state.books[OUTLET, m] -= amount
+    # rain and evaporation carry heat at the temperature of the surface and nothing else
+    rain = held.air[3] * grid.area[0] * dt * values[0, TEMPERATURE]
+    lost = held.air[4] * grid.area[0] * dt * values[0, TEMPERATURE]
+    gain[0, TEMPERATURE] += rain - lost
+    state.books[RAIN, TEMPERATURE] += rain
+    state.books[EVAPORATION, TEMPERATURE] -= lost
+    for i in range(count):
+        for m in range(tracers):
+            amount = grid.bed_area[i] * grid.bed_flux[i, m] * dt
+            gain[i, m] += amount
+            state.books[BED, m] += amount
+    return gain
+
+
+@compiled
+def breathe(values, grid, held, state, dt, constants, hydrogen):
+    """Exchange heat and gases with the air for one step.
+
+    Heat goes into the top layer, from where cooling overturns it and wind carries it down; gases
+    into the whole mixed layer, which is uniform.  Both are implicit in the mixed layer.
+    """
+    foot, mixed = 0, 0.0
+    while foot < values.shape[0] and (foot == 0 or grid.face[foot + 1] <= state.mixed_depth[0]):
+        mixed += grid.volume[foot]
+        foot += 1
+    pull = held.air[1] * dt
+    heat = pull * (held.air[0] - values[0, TEMPERATURE]) / (1.0 + pull / mixed)
+    values[0, TEMPERATURE] += heat / grid.volume[0]
+    state.books[SURFACE, TEMPERATURE] += heat
+    for m in range(held.exchange.shape[0]):
+        if held.exchange[m, 0] <= 0.0:
+            continue
+        share = 1.0
+        if m == DIC:
+            co2, hydrogen[0] = free_co2(
+                values[0, DIC],
+                values[0, ALKALINITY],
+                constants[0, 0],
+                constants[0, 1],
+                constants[0, 2],
+                hydrogen[0],
+            )
+            share = co2 / values[0, DIC]
+        pull = held.exchange[m, 0] * grid.area[0] * dt
+        amount = (
+            pull
+            * (held.exchange[m, 1] - share * values[0, m])
+            / (1.0 + pull * share / mixed)
+        )
+        for i in range(foot):
+            values[i, m] += amount / mixed
+        state.books[SURFACE, m] += amount
+
+
+@compiled
+def advance(state, grid, held, seen, steps, dt):
+    """Carry the column on by ``steps`` steps of ``dt`` [s].
+
+    Returns
+    -------
+    code, steps done, layer, tracer
+        Code DONE, FEED_CHANGED (the plant is to be solved again), NOT_FINITE (at the layer and
+        tracer named) or OVERDRAWN (more than a layer holds would leave it in a step).
+    """
+    values = state.values
+    count, tracers = values.shape
+    edge = np.empty((count + 1, tracers))
+    flux = np.empty((count + 1, tracers))
+    conductance = np.zeros((count + 1, tracers))
+    work = np.empty((3, count, tracers))
+    gain = np.empty((count, tracers))
+    carried = np.empty(tracers)
+    mean = np.empty(tracers + 2)
+    gas_mass = np.empty(count)
+    gas_volume = np.empty(count)
+    _load(state, grid, held, gas_mass, gas_volume)
+    _compare(values, grid, gas_mass, gas_volume, seen)
+    _conduct(values, grid, held, seen, conductance)
+    face_flow(held, seen.flow)
+    outlet = seen.flow[0] + (held.air[3] - held.air[4]) * grid.area[0]
+    code, layer, parts = _parts(grid, held, seen.flow, outlet, dt)
+    if code != DONE:
+        return code, 0, layer, 0
+    for step in range(steps):
+        breathe(values, grid, held, state, dt, held.constants, state.hydrogen)
+        react(
+            values,
+            grid.rates,
+            state.mixed_depth[0],
+            grid.face,
+            grid.volume,
+            dt,
+            state.books[REACTIONS],
+        )
+        for _ in range(parts):
+            part = dt / parts
+            exchange_with_streams(values, grid, held, part, state, outlet, gain, carried)
+            advect(
+                values, seen.flow, grid.volume, grid.weight, grid.start, part, edge, flux
+            )
+            for i in range(count):
+                for m in range(tracers):
+                    values[i, m] += gain[i, m] / grid.volume[i]
+        _conduct(values, grid, held, seen, conductance)
+        diffuse(values, conductance, grid.volume, dt, work)
+        _load(state, grid, held, gas_mass, gas_volume)
+        state.mixed_depth[0] = deepen(
+            values,
+            gas_mass,
+            gas_volume,
+            grid.volume,
+            grid.depth,
+            grid.face,
+            grid.pressure,
+            grid.physics,
+            held.air[2] * grid.area[0] * dt,
+        )
+        if _compare(values, grid, gas_mass, gas_volume, seen) > 0:
+            pool(
+                values, gas_mass, gas_volume, grid.volume, grid.pressure, grid.physics[1], mean
+            )
+        for i in range(count):
+            for m in range(tracers):
+                if not np.isfinite(values[i, m]):
+                    return NOT_FINITE, step + 1, i, m
+        if _feed_changed(values, held):
+            return FEED_CHANGED, step + 1, 0, 0
+    return DONE, steps, 0, 0
+
+
+@compiled
+def _load(state, grid, held, gas_mass, gas_volume):
+    """Refresh the dissolved gases that density needs."""
+    gas_load(
+        state.values,
+        held.constants,
+        state.hydrogen,
+        grid.molar_mass,
+        grid.molar_volume,
+        gas_mass,
+        gas_volume,
+    )
+
+
+@compiled
+def _compare(values, grid, gas_mass, gas_volume, seen):
+    """Refresh buoyancy frequency squared at the faces; return how many are unstable."""
+    return pair_stability(
+        values,
+        gas_mass,
+        gas_volume,
+        grid.pressure,
+        grid.distance,
+        grid.physics,
+        seen.stability,
+    )
+
+
+@compiled
+def _parts(grid, held, flow, outlet, dt):
+    """Return how many parts a step of streams and advection needs to stay within the layers."""
+    worst, where = 0.0, 0
+    for i in range(grid.volume.shape[0]):
+        out = max(flow[i], 0.0) if i > 0 else max(outlet, 0.0)
+        out += max(-flow[i + 1], 0.0)
+        for j in range(held.take.shape[0]):
+            out += held.take[j, i]
+        for k in range(held.entrained.shape[0]):
+            out += held.entrained[k, i]
+        if out / grid.volume[i] > worst:
+            worst, where = out / grid.volume[i], i
+    parts = int(np.ceil(worst * dt / 0.5))
+    if parts > 1000:
+        return OVERDRAWN, where, 0
+    return DONE, where, max(parts, 1)
+
+
+@compiled
+def _conduct(values, grid, held, seen, conductance):
+    """Fill the conductance of every inner face for every tracer [m3 s-1]."""
+    tracers = values.shape[1]
+    for f in range(1, values.shape[0]):
+        turbulent = turbulent_diffusivity(
+            seen.stability[f], grid.mixing[0], grid.mixing[1], grid.mixing[2]
+        )
+        heat, solute = staircase_diffusivity(
+            seen.stability[f],
+            (values[f, TEMPERATURE] - values[f - 1, TEMPERATURE]) / grid.distance[f],
+            held.expansion[f],
+            grid.physics[0],
+            held.heat[f],
+            held.viscosity[f],
+            grid.mixing[3],
+        )
+        seen.diffusivity[f] = turbulent + solute
+        over = grid.area[f] / grid.distance[f]
+        for m in range(tracers):
+            conductance[f, m] = over * (turbulent + solute + held.molecular[f, m])
+        conductance[f, TEMPERATURE] += over * (heat - solute)
+
+
+@compiled
+def _feed_changed(values, held):
+    """Return whether methane or DIC at any intake moved past the tolerance of its factors."""
+    for j in range(held.take.shape[0]):
+        for m in (METHANE, DIC):
+            reference = held.reference[j, m]
+            if not reference > 0.0:
+                continue
+            total, amount = 0.0, 0.0
+            for i in range(values.shape[0]):
+                total += held.take[j, i]
+                amount += held.take[j, i] * values[i, m]
+            if abs(amount - reference * total) > FEED_TOLERANCE * reference * total:
+                return True
+    return False

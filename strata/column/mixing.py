@@ -1,0 +1,176 @@
+"""How strongly the column mixes, and what happens where it is unstable.
+
+Turbulent diffusivity a / N [G84] within bounds; double diffusion through a staircase where warm
+salty water lies under cool fresh [K90]; layers that are heavier than the one below are pooled
+with it until neutral.
+
+[G84] Gargett 1984, J. Mar. Res. 42:359-393.
+[K90] Kelley 1990, J. Geophys. Res. 95:3365-3371: flux F_H / (rho c_p) = C kappa
+(alpha g / (kappa nu))^(1/3) dT^(4/3) over a step dT of the staircase, C = 0.0032 exp(4.8 /
+R^0.72), density ratio R = beta S_z / (alpha T_z), flux ratio
+(R + 1.4 (R - 1)^1.5) / (1 + 14 (R - 1)^1.5).
+"""
+
+import math
+
+from strata.compiled import compiled
+from strata.water.density import parcel_density
+
+#: Density ratios between which a staircase is taken to exist.
+STAIRCASE_RANGE = (1.1, 10.0)
+
+
+@compiled
+def turbulent_diffusivity(stability, coefficient, least, most):
+    """Return a / N within its bounds [m2 s-1]; the upper bound where the pair is not stable."""
+    if stability <= 0.0:
+        return most
+    return min(max(coefficient / math.sqrt(stability), least), most)
+
+
+@compiled
+def kelley_factor(density_ratio):
+    """Return C of the flux law of [K90]."""
+    return 0.0032 * math.exp(4.8 / density_ratio**0.72)
+
+
+@compiled
+def kelley_flux_ratio(density_ratio):
+    """Return the ratio of the buoyancy fluxes of salt and heat of [K90]."""
+    excess = (density_ratio - 1.0) ** 1.5
+    return (density_ratio + 1.4 * excess) / (1.0 + 14.0 * excess)
+
+
+@compiled
+def staircase_diffusivity(
+    stability, warming, expansion, gravity, heat_diffusivity, viscosity, step
+):
+    """Return the effective diffusivities of heat and of solutes through a staircase [m2 s-1].
+
+    ``stability`` is buoyancy frequency squared [s-2], ``warming`` the rise of potential
+    temperature with depth [K m-1], ``step`` the height of a step [m], so that the jump over it is
+    step times warming whatever the layers of the model.  Zero outside the range of the law.
+    """
+    if warming <= 0.0 or stability <= 0.0 or step <= 0.0:
+        return 0.0, 0.0
+    ratio = 1.0 + stability / (gravity * expansion * warming)
+    if ratio < STAIRCASE_RANGE[0] or ratio > STAIRCASE_RANGE[1]:
+        return 0.0, 0.0
+    lift = (expansion * gravity / (heat_diffusivity * viscosity)) ** (1.0 / 3.0)
+    jump = step * warming
+    flux = kelley_factor(ratio) * heat_diffusivity * lift * jump ** (4.0 / 3.0)
+    heat = flux / warming
+    return heat, heat * kelley_flux_ratio(ratio) / ratio
+
+
+@compiled
+def pair_stability(values, gas_mass, gas_volume, face_pressure, face_distance, site, stability):
+    """Fill buoyancy frequency squared [s-2] at the inner faces and return how many are unstable.
+
+    The two layers at a face are brought to its pressure; ``site`` is (gravity, haline
+    contraction).
+    """
+    unstable = 0
+    gravity, contraction = site[0], site[1]
+    for f in range(1, values.shape[0]):
+        p = face_pressure[f]
+        upper = parcel_density(
+            values[f - 1, 0], values[f - 1, 1], p, gas_mass[f - 1], gas_volume[f - 1], contraction
+        )
+        lower = parcel_density(
+            values[f, 0], values[f, 1], p, gas_mass[f], gas_volume[f], contraction
+        )
+        stability[f] = gravity * (lower - upper) / (0.5 * (lower + upper)) / face_distance[f]
+        unstable += lower < upper
+    return unstable
+
+
+@compiled
+def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, mean):
+    """Mix layers that lie heavier on lighter, exactly and conservatively, until none does.
+
+    ``mean`` (m + 2) is workspace: the tracers of the block in hand, then its gas mass and gas
+    volume.  Returns the number of blocks mixed.
+    """
+    count, tracers = values.shape
+    blocks = 0
+    f = 1
+    while f < count:
+        if not _overturns(values, gas_mass, gas_volume, f - 1, f, face_pressure[f], contraction):
+            f += 1
+            continue
+        blocks += 1
+        top, foot = f - 1, f - 1
+        total = volume[top]
+        for m in range(tracers):
+            mean[m] = values[top, m]
+        mean[tracers] = gas_mass[top]
+        mean[tracers + 1] = gas_volume[top]
+        growing = True
+        while growing:
+            growing = False
+            for side in range(2):
+                nxt = foot + 1 if side == 0 else top - 1
+                if nxt < 0 or nxt >= count:
+                    continue
+                face = foot + 1 if side == 0 else top
+                p = face_pressure[face]
+                block = parcel_density(
+                    mean[0], mean[1], p, mean[tracers], mean[tracers + 1], contraction
+                )
+                other = parcel_density(
+                    values[nxt, 0],
+                    values[nxt, 1],
+                    p,
+                    gas_mass[nxt],
+                    gas_volume[nxt],
+                    contraction,
+                )
+                if (other < block) if side == 0 else (other > block):
+                    share = volume[nxt] / (total + volume[nxt])
+                    for m in range(tracers):
+                        mean[m] += share * (values[nxt, m] - mean[m])
+                    mean[tracers] += share * (gas_mass[nxt] - mean[tracers])
+                    mean[tracers + 1] += share * (gas_volume[nxt] - mean[tracers + 1])
+                    total += volume[nxt]
+                    if side == 0:
+                        foot = nxt
+                    else:
+                        top = nxt
+                    growing = True
+        settle(values, gas_mass, gas_volume, volume, top, foot)
+        f = foot + 1
+    return blocks
+
+
+@compiled
+def settle(values, gas_mass, gas_volume, volume, top, foot):
+    """Give the layers ``top`` to ``foot`` their common mean, summed from what each holds."""
+    tracers = values.shape[1]
+    total = 0.0
+    for i in range(top, foot + 1):
+        total += volume[i]
+    for m in range(tracers):
+        base = values[top, m]
+        content = 0.0
+        for i in range(top, foot + 1):
+            content += (values[i, m] - base) * volume[i]
+        mean = base + content / total
+        for i in range(top, foot + 1):
+            values[i, m] = mean
+    for array in (gas_mass, gas_volume):
+        content = 0.0
+        for i in range(top, foot + 1):
+            content += array[i] * volume[i]
+        for i in range(top, foot + 1):
+            array[i] = content / total
+
+
+@compiled
+def _overturns(values, gas_mass, gas_volume, upper, lower, p, contraction):
+    """Return whether layer ``upper`` is heavier than ``lower`` at a pressure [Pa]."""
+    return parcel_density(
+        values[upper, 0], values[upper, 1], p, gas_mass[upper], gas_volume[upper], contraction
+    ) > parcel_density(
+        values[lower, 0], values[lower, 1], p, gas_mass[lower], gas_volume[lower], contraction
+    )

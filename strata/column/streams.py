@@ -1,0 +1,145 @@
+"""Water that enters the column with a will of its own: springs, rivers and what plants put back.
+
+Each is a *give*: some water with all it carries, what it takes along from the layers it passes as
+a plume, and the layers it ends in.  Takes and gives of a visit are stacked into the arrays of the
+kernel here.
+"""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from strata.errors import ComputationError
+from strata.lake.basin import Basin
+from strata.lake.site import Spring
+from strata.water.plume import follow_plume
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Surroundings:
+    """The water that a plume meets: one value per layer."""
+
+    basin: Basin
+    temperature: Array  # potential, degC
+    salinity: Array  # g/kg
+    gas_mass: Array  # kg m-3
+    gas_volume: Array  # m3 m-3
+    pressure: Array  # Pa, at the middles
+    haline_contraction: float
+    gravity: float
+
+
+@dataclass(frozen=True)
+class Source:
+    """Water at the mouth of an outlet."""
+
+    name: str
+    depth: float  # m
+    flow: float  # m3/s
+    temperature: float  # potential, degC
+    salinity: float  # g/kg
+    gas_mass: float  # kg m-3, suspended solids included
+    gas_volume: float  # m3 m-3
+    ports: int = 1
+    port_diameter: float = 0.5  # m
+    port_spacing: float = 10.0  # m
+
+
+@dataclass(frozen=True)
+class Path:
+    """Where a plume took water along and where it ended."""
+
+    entrained: Array  # (n,) m3/s
+    given: Array  # (n,) share
+    trap_depth: float  # m
+    end_depth: float  # m, the furthest it reached
+    dilution: float
+    reached: str  # "", "surface" or "floor"
+
+
+@dataclass(frozen=True)
+class Give:
+    """One stream into the column, as the kernel holds it."""
+
+    kind: int  # row of the ledger
+    water: float  # m3/s
+    added: Array  # (m,) amount per second, besides what is linked to takes
+    given: Array  # (n,)
+    entrained: Array  # (n,)
+    link: Mapping[int, Array] = field(default_factory=dict)  # take -> (m,) share passed on
+
+
+def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
+    """Return the path of the plume of a source through the column as it is.
+
+    Raises
+    ------
+    strata.ComputationError
+        If the plume cannot be integrated.
+    """
+    entrained, given, trap, end, dilution, code = follow_plume(
+        around.basin.faces,
+        around.temperature,
+        around.salinity,
+        around.gas_mass,
+        around.gas_volume,
+        around.pressure,
+        around.haline_contraction,
+        around.gravity,
+        source.depth,
+        source.flow,
+        source.temperature,
+        source.salinity,
+        source.gas_mass,
+        source.gas_volume,
+        float(source.ports),
+        source.port_diameter,
+        source.port_spacing,
+        overshoot,
+    )
+    if code < 0:
+        raise ComputationError(
+            f"the plume of {source.name} from {source.depth:g} m could not be followed (code {code})"
+        )
+    return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code])
+
+
+def spread_evenly(spring: Spring, basin: Basin) -> Array:
+    """Return the share of a spring that each layer of its interval gets, even over depth."""
+    assert spring.spread is not None
+    share = basin.overlap(*spring.spread) * basin.thickness
+    return share / share.sum()
+
+
+@dataclass(frozen=True)
+class Stacked:
+    """Takes and gives as the arrays of the kernel."""
+
+    take: Array
+    link: Array
+    added: Array
+    water: Array
+    entrained: Array
+    given: Array
+    kind: NDArray[np.int64]
+
+
+def stack(takes: Sequence[Array], gives: Sequence[Give], layers: int, tracers: int) -> Stacked:
+    """Return takes [(n,) m3/s each] and gives as arrays; no take or give is an empty axis."""
+    link = np.zeros((len(gives), len(takes), tracers))
+    for k, give in enumerate(gives):
+        for j, share in give.link.items():
+            link[k, j] = share
+    return Stacked(
+        take=np.array(takes).reshape(len(takes), layers),
+        link=link,
+        added=np.array([give.added for give in gives]).reshape(len(gives), tracers),
+        water=np.array([give.water for give in gives], dtype=np.float64),
+        entrained=np.array([give.entrained for give in gives]).reshape(len(gives), layers),
+        given=np.array([give.given for give in gives]).reshape(len(gives), layers),
+        kind=np.array([give.kind for give in gives], dtype=np.int64),
+    )

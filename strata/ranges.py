@@ -1,9 +1,15 @@
 """Refusal of values outside the range of a source: said once, in one form."""
 
+from collections.abc import Mapping
+from difflib import get_close_matches
+from typing import TypeVar
+
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from strata.errors import OutOfRangeError
+
+T = TypeVar("T")
 
 
 def within(
@@ -42,3 +48,27 @@ def within(
             f"{name} is {worst:g} {unit}; {low:g} to {high:g} {unit} is allowed ({source})"
         )
     return array
+
+
+def named(what: str, name: object, known: Mapping[str, T]) -> T:
+    """Return the entry of a mapping by its name, or refuse it with the nearest known one.
+
+    Parameters
+    ----------
+    what : str
+        What the name stands for, as the message shall say it.
+    name : object
+        The name given.
+    known : mapping
+        What is allowed.
+
+    Raises
+    ------
+    strata.OutOfRangeError
+        If the name is not known.
+    """
+    if isinstance(name, str) and name in known:
+        return known[name]
+    near = get_close_matches(str(name), list(known), n=1)
+    hint = f"did you mean {near[0]}?" if near else "known: " + ", ".join(known)
+    raise OutOfRangeError(f"{what} {name!r} is not known; {hint}")

@@ -42,6 +42,10 @@ class InputError(StrataError):
         self.faults = tuple(faults)
         super().__init__("\n".join(str(fault) for fault in self.faults))
 
+    def __reduce__(self) -> tuple[type, tuple[tuple[Fault, ...]]]:
+        """Keep the faults when the error crosses from one process to another."""
+        return type(self), (self.faults,)
+
 
 class OutOfRangeError(StrataError, ValueError):
     """A value outside the range in which the source of a formula stands."""

@@ -1,0 +1,50 @@
+"""``strata compare``: plans side by side."""
+
+from pathlib import Path
+
+import click
+
+from strata.cli import BREACHED, options
+
+
+@click.command(name="compare")
+@options.lake
+@options.plans
+@click.option(
+    "-o",
+    "--out",
+    type=click.Path(path_type=Path),
+    help="Folder for the dossier and the projections.",
+)
+@options.years
+@options.step_days
+@options.limits
+@options.strict
+@options.as_json
+@click.pass_context
+def command(
+    ctx: click.Context,
+    lake: Path,
+    plans: tuple[Path, ...],
+    out: Path | None,
+    years: float,
+    step_days: float,
+    limits: Path | None,
+    strict: bool,
+    as_json: bool,
+) -> None:
+    r"""Hold every PLAN against the limits and against LAKE left alone.
+
+    With -o, a dossier in HTML and one NetCDF file for each projection are written.
+
+    \b
+    Example:
+      strata compare strata-demo/lake.toml strata-demo/*-return.toml -o comparison
+    """
+    from strata.cli.comparing import run
+
+    breached = run(
+        lake, plans, options.limits_file(lake, limits), out, years, step_days, as_json
+    )
+    if strict and breached:
+        ctx.exit(BREACHED)

@@ -1,0 +1,93 @@
+"""Plans side by side with the lake left alone, each held against the limits."""
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from functools import partial
+
+import xarray as xr
+
+from strata.errors import StrataError
+from strata.lake.site import Lake
+from strata.limits import Limits, Verdict, judge
+from strata.plant.plan import Plan
+from strata.projection import project
+from strata.results import NO_PLAN
+from strata.studies import pool
+
+
+@dataclass(frozen=True)
+class Comparison:
+    """What became of the lake under each plan.
+
+    Parameters
+    ----------
+    results : dict
+        Name of the plan -> projection; the lake left alone comes first.
+    verdicts : dict
+        Name of the plan -> verdict; empty without limits.
+    """
+
+    results: dict[str, xr.Dataset]
+    verdicts: dict[str, Verdict]
+
+    @property
+    def breached(self) -> bool:
+        """Whether any plan breaches a limit; the lake left alone does not count."""
+        return any(v.breached for name, v in self.verdicts.items() if name != NO_PLAN)
+
+
+def compare(
+    lake: Lake,
+    plans: Sequence[Plan],
+    limits: Limits | None = None,
+    *,
+    years: float = 50.0,
+    step_days: float = 1.0,
+    alone: bool = True,
+    progress: Callable[[float], None] | None = None,
+    workers: int | None = None,
+) -> Comparison:
+    """Project a lake alone and under each plan, and judge all of it.
+
+    Parameters
+    ----------
+    lake : Lake
+    plans : sequence of Plan
+        Their names must differ.
+    limits : Limits, optional
+    years, step_days : float
+        As in :func:`strata.project`.
+    alone : bool
+        Whether the lake left alone is projected too; limits need it.
+    progress : callable, optional
+        Called with the share of all work done.
+    workers : int, optional
+        Number of processes.
+
+    Raises
+    ------
+    strata.StrataError
+        If two plans bear one name.
+    """
+    cases = [None, *plans] if alone or limits is not None else list(plans)
+    names = [plan.name if plan else NO_PLAN for plan in cases]
+    if len(set(names)) < len(names):
+        raise StrataError("the plans of a comparison must bear different names")
+    jobs = [partial(_project, lake, plan, years, step_days) for plan in cases]
+    results = dict(zip(names, pool.run(jobs, progress, workers), strict=True))
+    verdicts = {}
+    if limits is not None:
+        baseline = results[NO_PLAN]
+        verdicts = {name: judge(found, limits, baseline) for name, found in results.items()}
+    return Comparison(results, verdicts)
+
+
+def _project(
+    lake: Lake,
+    plan: Plan | None,
+    years: float,
+    step_days: float,
+    progress: Callable[[float], None],
+) -> xr.Dataset:
+    """Run one projection, as the pool calls it."""
+    return project(lake, plan, years=years, step_days=step_days, progress=progress)

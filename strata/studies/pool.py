@@ -1,0 +1,103 @@
+"""The one pool: independent jobs on the processors of this machine."""
+
+import os
+import threading
+from collections.abc import Callable, Sequence
+from concurrent.futures import Future, ProcessPoolExecutor
+from multiprocessing import get_context
+from typing import Any, TypeVar
+
+T = TypeVar("T")
+
+#: A job takes a function to report its share done, and returns its result.
+Job = Callable[[Callable[[float], None]], T]
+
+_reports: Any = None  # in a worker: the queue that progress goes to
+
+
+def run(
+    jobs: Sequence[Job[T]],
+    progress: Callable[[float], None] | None = None,
+    workers: int | None = None,
+) -> list[T]:
+    """Run jobs and return their results in their order.
+
+    Parameters
+    ----------
+    jobs : sequence of callable
+        Each can be pickled (``functools.partial`` of a function of a module) and takes a
+        function that it may call with its share done.
+    progress : callable, optional
+        Called with the share of all work done, 0 to 1.
+    workers : int, optional
+        Number of processes; as many as processors by default, with 1 the jobs run here.
+    """
+    shares = [0.0] * len(jobs)
+
+    def note(number: int, share: float) -> None:
+        shares[number] = share
+        if progress is not None:
+            progress(sum(shares) / len(shares))
+
+    workers = min(workers or usable_processors(), len(jobs))
+    if workers <= 1:
+        return [job(_Reporter(note, number)) for number, job in enumerate(jobs)]
+    return _run_in_processes(jobs, note, workers)
+
+
+def usable_processors() -> int:
+    """Return the number of processors this process may use."""
+    if hasattr(os, "sched_getaffinity"):
+        return len(os.sched_getaffinity(0))
+    return os.cpu_count() or 1
+
+
+class _Reporter:
+    """Reports the share done of one job."""
+
+    def __init__(self, note: Callable[[int, float], None], number: int) -> None:
+        self._note, self._number = note, number
+
+    def __call__(self, share: float) -> None:
+        self._note(self._number, share)
+
+
+def _run_in_processes(
+    jobs: Sequence[Job[T]], note: Callable[[int, float], None], workers: int
+) -> list[T]:
+    """Run jobs in processes that begin clean, and pass their progress on from a thread."""
+    context = get_context("spawn")
+    queue = context.Queue()
+
+    def listen() -> None:
+        while (report := queue.get()) is not None:
+            note(*report)
+
+    listener = threading.Thread(target=listen, daemon=True)
+    listener.start()
+    try:
+        with ProcessPoolExecutor(
+            workers, mp_context=context, initializer=_receive, initargs=(queue,)
+        ) as pool:
+            futures: list[Future[T]] = [
+                pool.submit(_work, job, number) for number, job in enumerate(jobs)
+            ]
+            try:
+                return [future.result() for future in futures]
+            except BaseException:
+                pool.shutdown(wait=False, cancel_futures=True)
+                raise
+    finally:
+        queue.put(None)
+        listener.join(timeout=5)
+
+
+def _receive(queue: Any) -> None:
+    """Keep the queue of the pool in a new worker."""
+    global _reports
+    _reports = queue
+
+
+def _work(job: Job[T], number: int) -> T:
+    """Run one job in a worker."""
+    return job(_Reporter(lambda place, share: _reports.put((place, share)), number))

@@ -1,0 +1,1 @@
+"""What readers see: figures, tables for the terminal, and the dossier."""

@@ -1,0 +1,325 @@
+"""Figures of a dossier: several axes each, with the same colours and limits for every plan."""
+
+from collections.abc import Iterator, Mapping, Sequence
+from contextlib import contextmanager
+from typing import Any
+
+import numpy as np
+import xarray as xr
+from matplotlib import rc_context
+from matplotlib.figure import Figure
+from matplotlib.ticker import MaxNLocator
+
+from strata.lake.site import Lake, Profile
+from strata.limits import Limits
+from strata.report import plot
+
+STYLE: dict[str, Any] = {
+    "font.size": 9.0,
+    "axes.titlesize": 9.5,
+    "axes.labelsize": 9.0,
+    "axes.spines.top": False,
+    "axes.spines.right": False,
+    "axes.grid": True,
+    "grid.color": "0.88",
+    "grid.linewidth": 0.6,
+    "axes.axisbelow": True,
+    "legend.frameon": False,
+    "legend.fontsize": 8.5,
+    "xtick.labelsize": 8.5,
+    "ytick.labelsize": 8.5,
+    "hatch.linewidth": 0.4,
+    "svg.fonttype": "path",
+    "svg.hashsalt": "strata",
+    "path.simplify": True,
+}
+WIDTH = 9.6  # inches
+
+
+@contextmanager
+def house_style() -> Iterator[None]:
+    """Draw in the style of the dossier."""
+    with rc_context(STYLE):  # type: ignore[arg-type]
+        yield
+
+
+def _grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figure, np.ndarray]:
+    """Return a figure with an array of axes, the legend's room on top."""
+    figure = Figure(figsize=(WIDTH, height))
+    top = 1.0 - 0.62 / height
+    axes = figure.subplots(
+        rows,
+        columns,
+        squeeze=False,
+        gridspec_kw={
+            "left": 0.075,
+            "right": options.pop("right", 0.985),
+            "bottom": 0.5 / height,
+            "top": options.pop("top", top),
+            "wspace": options.pop("wspace", 0.28),
+            "hspace": options.pop("hspace", 0.42),
+        },
+        **options,
+    )
+    for ax in axes.flat:
+        ax.xaxis.set_major_locator(MaxNLocator(4, steps=[1, 2, 2.5, 5, 10]))
+        ax.yaxis.set_major_locator(MaxNLocator(5, steps=[1, 2, 2.5, 5, 10]))
+    return figure, axes
+
+
+def _legend(figure: Figure, source: Any, columns: int = 6) -> None:
+    """Put one legend for all axes on top."""
+    handles, labels = source.get_legend_handles_labels()
+    figure.legend(handles, labels, loc="upper left", ncols=columns, bbox_to_anchor=(0.06, 1.0))
+
+
+def limits_through_time(
+    results: Mapping[str, xr.Dataset], limits: Limits, baseline: xr.Dataset | None
+) -> Figure:
+    """Return one small drawing per limit, every plan in it."""
+    columns = 3
+    rows = -(-len(limits.limits) // columns)
+    figure, axes = _grid(rows, columns, 0.9 + 2.1 * rows, hspace=0.55)
+    for ax, limit in zip(axes.flat, limits.limits, strict=False):
+        plot.against_limit(results, limit, ax, baseline)
+    for ax in axes.flat[len(limits.limits) :]:
+        ax.set_axis_off()
+    _legend(figure, axes.flat[0])
+    return figure
+
+
+def main_gradient(
+    results: Mapping[str, xr.Dataset], limits: Limits, baseline: xr.Dataset | None
+) -> Figure:
+    """Return depth and strength of the main gradient of every plan, with their limits."""
+    figure, ((left, right),) = _grid(1, 2, 3.3, wspace=0.22)
+    plot.through_time(results, "gradient_depth", left)
+    plot.through_time(results, "gradient_strength", right)
+    first = next(iter(results.values()))
+    start_depth = float(first["gradient_depth"][0])
+    start_strength = float(first["gradient_strength"][0])
+    for limit in limits.limits:
+        if limit.quantity == "gradient_depth_m":
+            plot.limit_line(left, limit.bound, f"limit: {limit.rule}")
+        elif limit.quantity == "gradient_sinking_m" and limit.against != "baseline":
+            plot.limit_line(left, start_depth + limit.bound, f"limit: sinks {limit.rule}")
+        elif limit.quantity == "gradient_strength_share" and limit.against != "baseline":
+            text = f"limit: {100 * limit.bound:.0f} % of the start"
+            plot.limit_line(right, limit.bound * start_strength, text)
+    left.invert_yaxis()
+    right.set_ylim(bottom=0.0)
+    left.set_ylabel("depth of the main gradient [m]")
+    right.set_ylabel("density step [kg/m³]")
+    _legend(figure, left)
+    return figure
+
+
+def gas_pressure(results: Mapping[str, xr.Dataset]) -> Figure:
+    """Return gas pressure against depth at the end of every plan, the start as a thin line."""
+    figure, axes = _grid(1, len(results), 3.9, sharey=True, wspace=0.08)
+    for number, (ax, (name, result)) in enumerate(zip(axes[0], results.items(), strict=True)):
+        years = plot.calendar_years(result)
+        plot.gas_pressure(result, ax, year=float(years[-1] - years[0]), compare=0.0)
+        ax.set_title(name, loc="left")
+        if number:
+            ax.set_ylabel("")
+    _legend(figure, axes[0, 0])
+    return figure
+
+
+def sections(results: Mapping[str, xr.Dataset], variables: Sequence[str]) -> Figure:
+    """Return depth-time sections: a row per variable, a column per plan, one scale per row."""
+    rows = len(variables)
+    figure, axes = _grid(
+        rows,
+        len(results),
+        0.7 + 1.95 * rows,
+        sharex=True,
+        sharey=True,
+        right=0.90,
+        wspace=0.08,
+        hspace=0.14,
+        top=1.0 - 0.28 / (0.7 + 1.95 * rows),
+    )
+    for row, variable in enumerate(variables):
+        limits = plot.colour_limits(list(results.values()), variable)
+        for column, (name, result) in enumerate(results.items()):
+            ax = axes[row, column]
+            ax.grid(False)
+            mesh = plot.section(result, variable, ax, limits)[0]
+            if row == 0:
+                ax.set_title(name, loc="left")
+            if column:
+                ax.set_ylabel("")
+            if row < rows - 1:
+                ax.set_xlabel("")
+        _colour_bar(figure, mesh, axes[row, -1], variable)
+    return figure
+
+
+def _colour_bar(figure: Figure, mesh: Any, ax: Any, variable: str, words: str = "") -> None:
+    """Put a colour bar with name and unit to the right of a row."""
+    box = ax.get_position()
+    room = figure.add_axes((0.915, box.y0, 0.012, box.height))
+    bar = figure.colorbar(mesh, cax=room)
+    name, unit, _, _ = plot.SHOWN[variable]
+    bar.set_label(f"{words}{name} [{unit}]")
+    bar.outline.set_visible(False)
+
+
+def differences(
+    results: Mapping[str, xr.Dataset], baseline: xr.Dataset, variables: Sequence[str]
+) -> Figure:
+    """Return sections of plan less lake left alone: a row per variable, a column per plan."""
+    rows = len(variables)
+    height = 0.7 + 1.95 * rows
+    figure, axes = _grid(
+        rows,
+        len(results),
+        height,
+        sharex=True,
+        sharey=True,
+        right=0.90,
+        wspace=0.08,
+        hspace=0.14,
+        top=1.0 - 0.28 / height,
+    )
+    for row, variable in enumerate(variables):
+        reach = (
+            max(
+                float(
+                    np.nanmax(
+                        np.abs(result[variable].values[-1] - baseline[variable].values[-1])
+                    )
+                )
+                for result in results.values()
+            )
+            / plot.SHOWN[variable][2]
+        )
+        for column, (name, result) in enumerate(results.items()):
+            ax = axes[row, column]
+            ax.grid(False)
+            mesh = plot.section(result, variable, ax, (-reach, reach), baseline)[0]
+            if row == 0:
+                ax.set_title(name, loc="left")
+            if column:
+                ax.set_ylabel("")
+            if row < rows - 1:
+                ax.set_xlabel("")
+        _colour_bar(figure, mesh, axes[row, -1], variable, "change of ")
+    return figure
+
+
+def profiles(results: Mapping[str, xr.Dataset], years: Sequence[float]) -> Figure:
+    """Return profiles at chosen years: a row per plan, a column per variable."""
+    variables = ("temperature", "salinity", "methane", "carbon_dioxide")
+    rows = len(results)
+    figure, axes = _grid(
+        rows,
+        len(variables),
+        0.8 + 2.3 * rows,
+        sharex="col",
+        sharey=True,
+        wspace=0.1,
+        hspace=0.2,
+    )
+    for row, (name, result) in enumerate(results.items()):
+        for column, variable in enumerate(variables):
+            ax = axes[row, column]
+            plot.profiles(result, variable, ax, years)
+            if column:
+                ax.set_ylabel("")
+            if row < rows - 1:
+                ax.set_xlabel("")
+        axes[row, 0].set_title(name, loc="left")
+    _legend(figure, axes[0, 0])
+    return figure
+
+
+def methane(results: Mapping[str, xr.Dataset]) -> Figure:
+    """Return methane in place by zone, and where it went, for every plan."""
+    figure, axes = _grid(
+        2, len(results), 4.9, sharex=True, sharey="row", wspace=0.1, hspace=0.42
+    )
+    for column, (name, result) in enumerate(results.items()):
+        plot.gas_in_place(result, axes[0, column])
+        plot.methane_fate(result, axes[1, column])
+        axes[0, column].set_title(name, loc="left")
+        axes[0, column].set_xlabel("")
+        if column:
+            axes[0, column].set_ylabel("")
+            axes[1, column].set_ylabel("")
+    _legend(figure, axes[0, 0])
+    handles, labels = axes[1, 0].get_legend_handles_labels()
+    figure.legend(handles, labels, loc="upper left", ncols=3, bbox_to_anchor=(0.06, 0.505))
+    return figure
+
+
+def plants(results: Mapping[str, xr.Dataset]) -> Figure:
+    """Return net power and purity of the product of every plant, a column per plan."""
+    figure, axes = _grid(
+        2, len(results), 4.6, sharex=True, sharey="row", wspace=0.1, hspace=0.15
+    )
+    for column, (name, result) in enumerate(results.items()):
+        plot.plant_series(result, "net_power", axes[0, column], 1e6, "MW")
+        plot.plant_series(result, "product_purity", axes[1, column])
+        axes[0, column].set_title(name, loc="left")
+        axes[0, column].set_xlabel("")
+        axes[0, column].set_ylabel("" if column else "net power [MW]")
+        axes[1, column].set_ylabel("" if column else "CH$_4$ in the product [1]")
+        axes[1, column].set_ylim(0.0, 1.02)
+        axes[0, column].legend(loc="best")
+    return figure
+
+
+_CAST_NAMES = {
+    "temperature": "temperature",
+    "salinity": "salinity",
+    "methane": "CH4",
+    "carbon_dioxide": "CO2",
+    "oxygen": "O2",
+}
+
+
+def today(result: xr.Dataset, lake: Lake) -> Figure:
+    """Return today's column: profiles with the casts' readings, gas pressure, stability."""
+    figure, axes = _grid(1, 5, 4.2, sharey=True, wspace=0.14)
+    first = result.isel(time=slice(0, 1))
+    row = axes[0]
+    shown = ("temperature", "salinity", "methane", "carbon_dioxide")
+    for ax, variable in zip(row, shown, strict=False):
+        plot.profiles(first, variable, ax, (0,), _reading(lake, _CAST_NAMES[variable]))
+        ax.set_ylabel("")
+    plot.gas_pressure(first, row[4])
+    row[4].set_ylabel("")
+    row[4].legend(loc="upper right", fontsize="x-small")
+    row[0].set_ylabel("depth [m]")
+    for ax in row:
+        for found in _main_extent(first):
+            ax.axhspan(*found, color="0.85", zorder=0)
+    _legend(figure, row[2])
+    return figure
+
+
+def _main_extent(result: xr.Dataset) -> list[tuple[float, float]]:
+    middle = float(result["gradient_depth"][0])
+    half = 0.5 * float(result["gradient_thickness"][0])
+    return [(middle - half, middle + half)]
+
+
+def _reading(lake: Lake, name: str) -> Profile | None:
+    return lake.cast.profiles.get(name)
+
+
+def separator(sweep: xr.Dataset) -> Figure:
+    """Return recovery, purity and net energy against pressure, CO2 free and bound."""
+    figure, (row,) = _grid(1, 3, 3.3, wspace=0.3)
+    plot.separator_sweep(sweep, "recovery", row[0], label="CH$_4$ recovered [1]")
+    plot.separator_sweep(sweep, "purity", row[1], label="CH$_4$ in the gas [1]")
+    plot.separator_sweep(
+        sweep, "net_energy", row[2], 1e6, label="net energy [MJ per m³ of feed]"
+    )
+    row[0].set_ylim(0.0, 1.02)
+    row[1].set_ylim(0.0, 1.02)
+    _legend(figure, row[0])
+    return figure

@@ -172,9 +172,7 @@ def test_a_file_without_depths_or_without_anything_is_refused():
     assert faults("CH4_mol_m3,CH4_error_mol_m3", "1,0.1") == [
         "gas.csv: column depth_m is missing"
     ]
-    assert faults("# nothing here") == [
-        "gas.csv is empty; a line of headings is required"
-    ]
+    assert faults("# nothing here") == ["gas.csv is empty; a line of headings is required"]
 
 
 def test_all_faults_of_a_cast_come_at_once():

@@ -28,7 +28,9 @@ def test_a_value_is_changed_in_the_unit_of_its_file(folder, sound_lake):
     assert changed.plants[0].return_water.depth == 210
     assert changed.plants[0].stages[0].pressure == pytest.approx(3e5)
     assert plan.plants[0].return_water.depth == 275  # itself it stays as it is
-    lake = with_values(sound_lake, {"mixing.coefficient_m2_s2": 4e-9, "spring.deep.flow_m3_s": 5})
+    lake = with_values(
+        sound_lake, {"mixing.coefficient_m2_s2": 4e-9, "spring.deep.flow_m3_s": 5}
+    )
     assert lake.mixing.coefficient == pytest.approx(4e-9)
     assert lake.springs[0].flow == 5
     np.testing.assert_array_equal(
@@ -81,7 +83,7 @@ def test_no_file_is_needed_any_more(folder):
         (
             "plant.north.flow_m3_s",
             -5,
-            "plan.toml: plant.north.flow_m3_s is -5; more than 0 and up to 1000 m3/s is allowed",
+            "plan.toml: plant.north.flow_m3_s is -5; more than 0 and up to 100000 m3/s is allowed",
         ),
         (
             "plant.2.flow_m3_s",
@@ -130,7 +132,7 @@ def test_faults_of_all_files_come_at_once(folder):
     folder.spoil(folder.limits, "at_most = 0.9", "at_mots = 0.9")
     expected = [
         "lake.toml: mixing.least has no unit; write least_m2_s",
-        "plan.toml: plant.north.flow_m3_s is -6; more than 0 and up to 1000 m3/s is allowed",
+        "plan.toml: plant.north.flow_m3_s is -6; more than 0 and up to 100000 m3/s is allowed",
         "limits.toml: limit.1.at_mots is not known; the nearest known is at_most",
     ]
     with pytest.raises(InputError) as caught:

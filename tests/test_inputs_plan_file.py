@@ -71,7 +71,7 @@ def test_lime_wash_and_timetable_arrive(folder):
         (
             "flow_m3_s = 6.0",
             "flow_m3_s = -6.0",
-            "plan.toml: plant.north.flow_m3_s is -6; more than 0 and up to 1000 m3/s is allowed",
+            "plan.toml: plant.north.flow_m3_s is -6; more than 0 and up to 100000 m3/s is allowed",
         ),
         (
             "flow_m3_s = 6.0",
@@ -137,9 +137,9 @@ def test_a_mistake_gets_one_message_with_its_key(folder, sound_lake, old, new, m
 
 
 def test_a_plant_that_drinks_its_layer_dry_is_refused(folder, sound_lake):
-    folder.spoil(folder.plan, "flow_m3_s = 6.0", "flow_m3_s = 990.0")
+    folder.spoil(folder.plan, "flow_m3_s = 6.0", "flow_m3_s = 30000")
     (message,) = refusal(folder, sound_lake)
-    assert message.startswith("plan.toml: plant.north.flow_m3_s is 990; the layer of ")
+    assert message.startswith("plan.toml: plant.north.flow_m3_s is 30000; the layer of ")
     assert message.endswith(" m3/s (its water in 30 days)")
 
 

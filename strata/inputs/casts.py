@@ -22,7 +22,7 @@ _CONCENTRATION = ("mol_m3", "mmol_L", "mmol_m3", "umol_L")
 
 
 class Quantity(NamedTuple):
-    """What a column may hold: its units, and its range in the first of them (SI)."""
+    """What a column may hold: the units it may be given in, and its range in SI (conductivity in mS/cm)."""
 
     units: tuple[str, ...]
     range: Between
@@ -32,7 +32,7 @@ class Quantity(NamedTuple):
 QUANTITIES = {
     "temperature": Quantity(("degC",), Between(0, 40)),
     "salinity": Quantity(("g_kg",), Between(0, 40)),
-    "conductivity": Quantity(("mS_cm", "uS_cm"), Between(0, 60)),
+    "conductivity": Quantity(("mS_cm", "uS_cm"), Between(0, 50)),
     "DIC": Quantity(_CONCENTRATION, Between(0, 1000)),
     "CO2": Quantity(_CONCENTRATION, Between(0, 800)),
     "alkalinity": Quantity(("eq_m3", "meq_L"), Between(0, 500)),

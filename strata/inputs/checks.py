@@ -16,11 +16,11 @@ from strata.column.tracers import TRACERS
 from strata.errors import Fault, InputError
 from strata.inputs.casts import Origin
 from strata.lake.basin import build_basin
-from strata.water.stability import standard_gravity
 from strata.lake.site import Lake, Profile, Site
 from strata.margins import mixed_layer_depth, water
 from strata.water.intrusion import SINK_COEFFICIENT, layer_shares
 from strata.water.salinity import salinity_from_conductivity
+from strata.water.stability import standard_gravity
 
 Array = NDArray[np.float64]
 log = logging.getLogger(__name__)
@@ -112,7 +112,9 @@ def levelled_density(depth: Array, found: Mapping[str, Array], site: Site) -> Ar
     squared = found["buoyancy_frequency_squared"][1:-1]
     density = found["density"]
     steps = squared * 0.5 * (density[1:] + density[:-1]) * np.diff(depth)
-    return density[0] + np.concatenate(([0.0], np.cumsum(steps))) / standard_gravity(site.latitude)
+    return density[0] + np.concatenate(([0.0], np.cumsum(steps))) / standard_gravity(
+        site.latitude
+    )
 
 
 def _density_noise(

@@ -23,7 +23,9 @@ def build_limits(texts: Texts) -> Limits:
     file = texts.shown(texts.main)
     document = texts.document()
     model, sound, faults = validate(document, LimitsFile, file)
-    faults += [Fault(file, place, message) for place, message in _cross_checks(document, sound)]
+    faults += [
+        Fault(file, place, message) for place, message in _cross_checks(document, sound)
+    ]
     if faults or model is None:
         raise InputError(faults)
     return Limits(

@@ -20,8 +20,8 @@ SomeShare = Annotated[float, Between(0, 1, above=True)]
 Depth = Annotated[
     float, Between(0, DEEPEST, why="depth counts down from the lake surface, which is at 0")
 ]
-Flow = Annotated[float, Between(0, 1000)]
-SomeFlow = Annotated[float, Between(0, 1000, above=True)]
+Flow = Annotated[float, Between(0, 100_000)]
+SomeFlow = Annotated[float, Between(0, 100_000, above=True)]
 Temperature = Annotated[float, Between(0, 40)]
 Salinity = Annotated[float, Between(0, 40)]
 Dissolved = Annotated[float, Between(0, 1000)]
@@ -50,7 +50,7 @@ class SiteTable(Table):
     ) = None
     magnesium_share: Share | None = None
     calcium_share: Share | None = None
-    conductivity_factor_g_kg_per_mS_cm: Annotated[float, Between(0.4, 1.2)] | None = None
+    conductivity_factor_g_kg_per_mS_cm: Annotated[float, Between(0.4, 1.5)] | None = None
 
 
 class BasinTable(Table):
@@ -111,7 +111,7 @@ class RiverTable(WaterTable):
     """``[[river]]``: water that enters the surface layer."""
 
     name: Text
-    flow_m3_s: Annotated[float, Between(0, 100_000)]
+    flow_m3_s: Flow
 
 
 class BedTable(Table):

@@ -1,7 +1,7 @@
 """The table of gases: one row each, and water as the vapour that goes with them.
 
-Adding a gas is adding a row to :data:`SPECIES`; no other place names its properties.  Sources in
-brackets are listed in full in ``docs/reference/sources.md``.
+Adding a gas is adding a row to :data:`SPECIES`; no other place names its properties.  Sources
+in brackets are listed in full in ``docs/reference/sources.md``.
 
 Henry's constant has two forms, either or both of which a row may give:
 
@@ -9,10 +9,10 @@ Henry's constant has two forms, either or both of which a row may give:
   pressure of water;
 - ``solubility``: A1, A2, A3 of Weiss's form, ln(solubility) = A1 + A2 100/T + A3 ln(T/100).
 
-A row with both takes the first down to ``henry_from`` and, below, the temperature course of the
-second joined to the value of the first, so that nothing jumps.  A row with ``henry`` alone is
-refused below ``henry_from``.  A row with ``solubility`` alone takes it as it is, in mol per kg of
-solution and atmosphere of fugacity at 1 atm.
+A row with both takes the first down to ``henry_from`` and, below, the temperature course of
+the second joined to the value of the first, so that nothing jumps.  A row with ``henry`` alone
+is refused below ``henry_from``.  A row with ``solubility`` alone takes it as it is, in mol per
+kg of solution and atmosphere of fugacity at 1 atm.
 """
 
 from dataclasses import dataclass
@@ -143,7 +143,7 @@ LAKE_GASES = ("CH4", "CO2", "N2", "Ar", "O2", "H2S")
 #: Water as a component of the gas phase: critical temperature K, pressure Pa, acentric factor.
 WATER_CRITICAL = (647.096, 22.064e6, 0.3443)
 
-#: k_ij of water vapour with itself is nil; of the pair CH4-CO2 it is a law the user can switch.
+#: k_ij of the pair CH4-CO2, which is a law that the user can switch.
 METHANE_CARBON_DIOXIDE = 0.0919  # Knapp et al. 1982
 
 #: The name under which water vapour appears in compositions.

@@ -5,6 +5,8 @@ absolute [Pa], concentrations [mol m-3].  ``laws`` switches corrections by name,
 :class:`Laws`.
 """
 
+from strata.gas.air import equilibrium as air_equilibrium
+from strata.gas.air import sea_water_equilibrium
 from strata.gas.bubble import Bubble, bubble_point
 from strata.gas.diffusivity import gas_diffusivity, schmidt_number
 from strata.gas.flash import Flash, flash
@@ -21,6 +23,7 @@ __all__ = [
     "Laws",
     "Limed",
     "Speciation",
+    "air_equilibrium",
     "alkalinity_of",
     "bubble_point",
     "compressibility_factor",
@@ -32,5 +35,6 @@ __all__ = [
     "henry_constant",
     "salting_out",
     "schmidt_number",
+    "sea_water_equilibrium",
     "speciate",
 ]

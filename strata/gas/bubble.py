@@ -1,7 +1,7 @@
 """When gas comes out of solution: the pressure at which the first bubble would form.
 
-The total gas pressure of a parcel is that of a bubble in equilibrium with all its dissolved gases
-and with water vapour.  Full entries of the sources named in brackets are in
+The total gas pressure of a parcel is that of a bubble in equilibrium with all its dissolved
+gases and with water vapour.  Full entries of the sources named in brackets are in
 ``docs/reference/sources.md``.
 """
 
@@ -18,7 +18,7 @@ from strata.constants import ATMOSPHERE, GAS_CONSTANT, WATER_MASS, ZERO_CELSIUS
 from strata.errors import ComputationError, OutOfRangeError
 from strata.gas import columns as at
 from strata.gas.henry import HIGHEST, henry_of_row, salting_out_of_row
-from strata.gas.laws import Laws
+from strata.gas.laws import Laws, LawsLike
 from strata.gas.mixture import LEAST_GAS_ROOT, attraction_roots, fugacity_rows
 from strata.gas.solubility import SALINITY_RANGE, checked_temperature
 from strata.gas.table import gas_table
@@ -38,7 +38,9 @@ HIGHEST_PRESSURE = 6.2e6  # Pa, to which Peng-Robinson and Henry's law are compa
 
 @compiled
 def liquid_side(t, s, alk, c, rows, laws, henry, reference):
-    """Fill henry and reference of every gas and of water, so that a bubble is at equilibrium when
+    """Fill henry and reference of every gas and of water.
+
+    A bubble is at equilibrium when
 
         y_i phi_i P = henry_i c_i exp(V_i (P - reference_i) / RT)
 
@@ -71,7 +73,7 @@ def water_volume(t):
 
 @compiled
 def saturated_vapour_ln_phi(t, rows, roots):
-    """Return ln of the fugacity coefficient of water vapour at saturation, by its second virial."""
+    """Return ln of the fugacity coefficient of saturated water vapour, from its virial."""
     n = rows.shape[0] - 1
     rt = GAS_CONSTANT * (t + ZERO_CELSIUS)
     virial = rows[n, at.CO_VOLUME] - roots[n] * roots[n] / rt
@@ -163,7 +165,19 @@ def bubble_rows(t, s, c, rows, pairs, laws, pressure, y, code):
     roots, work, ln_phi = np.empty(m), np.empty(m), np.empty(m)
     for k in range(t.size):
         pressure[k], code[k] = _bubble(
-            t[k], s[k], 0.0, c[k], rows, pairs, laws, y[k], henry, reference, roots, work, ln_phi
+            t[k],
+            s[k],
+            0.0,
+            c[k],
+            rows,
+            pairs,
+            laws,
+            y[k],
+            henry,
+            reference,
+            roots,
+            work,
+            ln_phi,
         )
 
 
@@ -179,15 +193,23 @@ def checked_gases(
     temperature: ArrayLike, salinity: ArrayLike, dissolved: Mapping[str, ArrayLike]
 ) -> list[Array]:
     """Return temperature, salinity and the gases in their order, checked and of one shape."""
-    t = ranges.within("temperature", temperature, TEMPERATURE_RANGE, "degC", "Henry's constants")
+    t = ranges.within(
+        "temperature", temperature, TEMPERATURE_RANGE, "degC", "Henry's constants"
+    )
     s = ranges.within(
-        "salinity", salinity, SALINITY_RANGE, "g/kg", "salting-out, Weisenberger & Schumpe 1996"
+        "salinity",
+        salinity,
+        SALINITY_RANGE,
+        "g/kg",
+        "salting-out, Weisenberger & Schumpe 1996",
     )
     amounts = []
     for gas, value in dissolved.items():
         checked_temperature(gas, t)
         source = "dilute solution"
-        amounts.append(ranges.within(f"dissolved {gas}", value, (0.0, 3000.0), "mol/m3", source))
+        amounts.append(
+            ranges.within(f"dissolved {gas}", value, (0.0, 3000.0), "mol/m3", source)
+        )
     return list(np.broadcast_arrays(t, s, *amounts))
 
 
@@ -195,15 +217,15 @@ def bubble_point(
     temperature: ArrayLike,
     salinity: ArrayLike,
     dissolved: Mapping[str, ArrayLike],
-    laws: object = None,
+    laws: LawsLike = None,
 ) -> Bubble:
     r"""Return the total gas pressure of water and the composition of its first bubble.
 
     .. math:: y_i\,\varphi_i\,P = k_i\,c_i\,\frac{e^{V_i (P - P_0)/RT}}{1 - \sum_j c_j V_j},
               \qquad \sum_i y_i = 1
 
-    over all gases given and water vapour, whose fugacity is that of saturation by Raoult's law with
-    the Poynting factor.  Solved for the pressure by the secant method on the sum.
+    over all gases given and water vapour, whose fugacity is that of saturation by Raoult's law
+    with the Poynting factor.  Solved for the pressure by the secant method on the sum.
 
     Parameters
     ----------
@@ -220,8 +242,8 @@ def bubble_point(
     Returns
     -------
     Bubble
-        ``pressure`` [Pa] and ``composition``.  Water without gas has its vapour pressure; without
-        gas and without the law of water vapour, nil and an empty composition of zeros.
+        ``pressure`` [Pa] and ``composition``.  Water without gas has its vapour pressure;
+        without gas and without the law of water vapour, nil and an empty composition of zeros.
 
     Raises
     ------
@@ -264,6 +286,6 @@ def _refuse(code: NDArray[np.int64], pressure: Array, temperature: Array) -> Non
         row = int(np.argmax(bad))
         raise OutOfRangeError(
             f"bubble pressure of row {row} at {temperature[row]:g} degC lies above "
-            f"{HIGHEST_PRESSURE / 1e5:g} bar or in the liquid; Peng-Robinson and Henry's law are "
-            "not compared there"
+            f"{HIGHEST_PRESSURE / 1e5:g} bar or in the liquid; Peng-Robinson and Henry's law "
+            "are not compared there"
         )

@@ -5,9 +5,9 @@ r"""Dissolved carbonate: from DIC and alkalinity to free CO2, pH and calcite.
           A = [HCO_3^-] + 2[CO_3^{2-}] + [HS^-] + [OH^-] - [H^+]
 
 Constants of [Plummer & Busenberg 1982] with the effect of pressure after [Millero 1983], ion
-activities after [Davies 1962], that of CO2 after [Weisenberger & Schumpe 1996].  Compiled formulas are
-here, the public functions in ``speciation.py``.  Water is free of borate, silicate and phosphate as far as
-alkalinity goes.
+activities after [Davies 1962], that of CO2 after [Weisenberger & Schumpe 1996].  Compiled
+formulas are here, the public functions in ``speciation.py``.  Water is free of borate,
+silicate and phosphate as far as alkalinity goes.
 """
 
 import math
@@ -22,7 +22,7 @@ _STEPS = 200
 
 @compiled
 def _pressure_effect(t, q, volume, compressibility):
-    """Return ln K(p) - ln K(1 atm); volume [cm3/mol] and compressibility [cm3/mol/bar] of reaction."""
+    """Return ln K(p) - ln K(1 atm) of a volume [cm3/mol] and compressibility [cm3/mol/bar]."""
     rt = 10.0 * GAS_CONSTANT * (t + ZERO_CELSIUS)  # cm3 bar mol-1
     return q * (-volume + 0.5 * compressibility * q) / rt
 
@@ -72,7 +72,7 @@ def ln_sulfide_constant(t, p):
 
 @compiled
 def ln_calcite_product(t, p):
-    """Return ln of the solubility product of calcite [mol2/kg2]; pressure after [Millero 1995]."""
+    """Return ln of the solubility product of calcite [mol2/kg2]; pressure [Millero 1995]."""
     kelvin = t + ZERO_CELSIUS
     lg = -171.9065 - 0.077993 * kelvin + 2839.319 / kelvin + 71.595 / _LN10 * math.log(kelvin)
     volume = -48.76 + 0.5304 * t
@@ -82,7 +82,7 @@ def ln_calcite_product(t, p):
 
 @compiled
 def ln_aragonite_product(t, p):
-    """Return ln of the solubility product of aragonite [mol2/kg2]; pressure after [Millero 1995]."""
+    """Return ln of the solubility product of aragonite [mol2/kg2]; pressure [Millero 1995]."""
     kelvin = t + ZERO_CELSIUS
     lg = -171.9773 - 0.077993 * kelvin + 2903.293 / kelvin + 71.595 / _LN10 * math.log(kelvin)
     volume = -45.96 + 0.5304 * t
@@ -94,8 +94,8 @@ def ln_aragonite_product(t, p):
 def ln_activity_of_one(t, ionic_strength):
     """Return ln of the activity coefficient of a singly charged ion [Davies 1962].
 
-    That of a doubly charged one is four times it.  The permittivity of water is that of [Malmberg
-    & Maryott 1956].
+    That of a doubly charged one is four times it.  The permittivity of water is that of
+    [Malmberg & Maryott 1956].
     """
     permittivity = 87.740 + t * (-0.40008 + t * (9.398e-4 - t * 1.410e-6))
     x = permittivity * (t + ZERO_CELSIUS)
@@ -172,7 +172,8 @@ def free_co2(dic, alk, k1, k2, kw, h_guess):
 def hydrogen_of_co2(co2, alk, k1, k2, kw):
     """Return the hydrogen ion [mol m-3] of water of a given free CO2 and alkalinity.
 
-    Newton's method on the cubic h3 + A h2 - (k1 c + kw) h - 2 k1 k2 c, which has one change of sign.
+    Newton's method on the cubic h3 + A h2 - (k1 c + kw) h - 2 k1 k2 c, which has one change of
+    sign.
     """
     linear = k1 * co2 + kw
     last = 2.0 * k1 * k2 * co2

@@ -16,7 +16,7 @@ Array = NDArray[np.float64]
 
 @compiled
 def diffusivity_at(t, d0, activation):
-    """Return D0 exp(-Ea / RT) [m2/s] at t [degC]; the two numbers stand in the species table."""
+    """Return D0 exp(-Ea / RT) [m2/s] at t [degC], two numbers of the species table."""
     return d0 * math.exp(-activation / (GAS_CONSTANT * (t + ZERO_CELSIUS)))
 
 
@@ -25,7 +25,8 @@ def gas_diffusivity(gas: str, temperature: ArrayLike) -> Array:
 
     .. math:: D = D_0\,e^{-E_a/RT}
 
-    [Jaehne, Heinz & Dietrich 1987] for CO2 and CH4; the species table names the others' source.
+    [Jaehne, Heinz & Dietrich 1987] for CO2 and CH4; the species table names the others'
+    source.
     """
     row = ranges.named("gas", gas, SPECIES)
     t = ranges.within("temperature", temperature, (0.0, 40.0), "degC", row.diffusivity_source)
@@ -36,8 +37,8 @@ def gas_diffusivity(gas: str, temperature: ArrayLike) -> Array:
 def schmidt_number(gas: str, temperature: ArrayLike) -> Array:
     """Return the Schmidt number of a gas in fresh water.
 
-    The cubic of [Wanninkhof 1992], 0 to 30 degC, for CO2, CH4, N2 and O2; for gases that it leaves out,
-    kinematic viscosity over diffusivity, 0 to 40 degC.
+    The cubic of [Wanninkhof 1992], 0 to 30 degC, for CO2, CH4, N2 and O2; for gases that it
+    leaves out, kinematic viscosity over diffusivity, 0 to 40 degC.
     """
     row = ranges.named("gas", gas, SPECIES)
     if row.schmidt is None:

@@ -26,7 +26,7 @@ from strata.gas.bubble import (
 )
 from strata.gas.carbonate import carbonate_constants, free_co2, hydrogen_of_co2
 from strata.gas.ions import ionic_strength_of
-from strata.gas.laws import Laws
+from strata.gas.laws import Laws, LawsLike
 from strata.gas.mixture import LEAST_GAS_ROOT, attraction_roots, fugacity_rows
 from strata.gas.table import gas_table
 from strata.species import VAPOUR
@@ -57,9 +57,9 @@ def bound_carbon(co2, alk, k1, k2, kw):
 def _gas_amount(c, share, vapour, carbon, alk, k1, k2, kw, y):
     """Fill y; return the moles of gas per m3 of water for given K values.
 
-    share_i c_i is the mole fraction over water of concentration c_i.  carbon is the column in which
-    c is DIC in equilibrium with the alkalinity, or -1.  Newton's method on sum(y) = 1, kept
-    inside its bracket.
+    share_i c_i is the mole fraction over water of concentration c_i.  carbon is the column in
+    which c is DIC in equilibrium with the alkalinity, or -1.  Newton's method on sum(y) = 1,
+    kept inside its bracket.
     """
     n = c.size
     low, high = 0.0, math.inf
@@ -142,7 +142,7 @@ def _flash(t, s, alk, c, p, carbon, rows, pairs, laws, y, work):
 
 @compiled
 def flash_rows(t, s, p, alk, c, carbon, rows, pairs, laws, gas, y, code):
-    """Flash every row: fill moles of gas per m3 of water, mole fractions (vapour last) and code.
+    """Flash every row: fill moles of gas per m3 of water, mole fractions and code.
 
     Codes: 0 done, -1 not converged, -2 the gas would be liquid, -3 the water boils.
     """
@@ -183,7 +183,9 @@ class Flash:
     """What leaves the water and what stays [mol per m3 of feed water]."""
 
     released: dict[str, Array]  # gases without water vapour
-    residual: dict[str, Array]  # gases; with alkalinity "CO2" is the free gas and "DIC" its total
+    residual: dict[
+        str, Array
+    ]  # gases; with alkalinity "CO2" is the free gas and "DIC" its total
     composition: dict[str, Array]  # mole fractions of the gas, "H2O" with it; nil without gas
     vapour: Array  # water that leaves as vapour
 
@@ -195,7 +197,7 @@ def flash(
     pressure: ArrayLike,
     approach: ArrayLike = 1.0,
     alkalinity: ArrayLike = 0.0,
-    laws: object = None,
+    laws: LawsLike = None,
 ) -> Flash:
     r"""Return what gas water gives off at a pressure, and what it keeps.
 
@@ -204,9 +206,9 @@ def flash(
               \frac{e^{V_i (P-P_0)/RT}}{1 - \sum_j c^0_j V_j}
 
     solved for the moles of gas n per volume of water by Newton's method, in rounds with the
-    fugacity coefficients.  Isothermal; the water carried off as vapour is not taken from its volume.
-    Where there is alkalinity, CO2 that leaves is made up from bicarbonate [Plummer & Busenberg
-    1982].
+    fugacity coefficients.  Isothermal; the water carried off as vapour is not taken from its
+    volume. Where there is alkalinity, CO2 that leaves is made up from bicarbonate [Plummer &
+    Busenberg 1982].
 
     Parameters
     ----------
@@ -235,8 +237,8 @@ def flash(
     Examples
     --------
     >>> stage = flash(23.0, 5.0, {"CH4": 15.0, "CO2": 80.0}, 2e5)
-    >>> f"{float(stage.released['CH4']) / 15.0:.3f} of CH4, y {float(stage.composition['CH4']):.2f}"
-    '0.943 of CH4, y 0.29'
+    >>> round(float(stage.released["CH4"]), 2), round(float(stage.composition["CH4"]), 3)
+    (14.17, 0.296)
     """
     given = dict(dissolved)
     total_given = "DIC" in given
@@ -249,7 +251,9 @@ def flash(
         *checked_gases(temperature, salinity, given),
         ranges.within("pressure", pressure, (100.0, HIGHEST_PRESSURE), "Pa", source),
         ranges.within("approach", approach, (0.0, 1.0), "", "a share"),
-        ranges.within("alkalinity", alkalinity, (0.0, 400.0), "eq/m3", "activities, Davies 1962"),
+        ranges.within(
+            "alkalinity", alkalinity, (0.0, 400.0), "eq/m3", "activities, Davies 1962"
+        ),
     )
     shape = shaped[0].shape
     t, s, *amounts, p, share, alk = (np.array(part).ravel() for part in shaped)
@@ -276,7 +280,9 @@ def flash(
     return Flash(
         released={name: off[:, i].reshape(shape) for i, name in enumerate(table.gases)},
         residual=residual,
-        composition={name: y[:, i].reshape(shape) for i, name in enumerate((*table.gases, VAPOUR))},
+        composition={
+            name: y[:, i].reshape(shape) for i, name in enumerate((*table.gases, VAPOUR))
+        },
         vapour=off[:, -1].reshape(shape),
     )
 
@@ -288,7 +294,9 @@ def _refuse(code: NDArray[np.int64], temperature: Array, pressure: Array) -> Non
     row = int(np.argmax(code != 0))
     where = f"row {row}, {temperature[row]:g} degC and {pressure[row]:g} Pa"
     if code[row] == BOILS:
-        raise OutOfRangeError(f"flash: water boils ({where}); pressure must exceed its vapour's")
+        raise OutOfRangeError(
+            f"flash: water boils ({where}); pressure must exceed its vapour's"
+        )
     if code[row] == CONDENSED:
         raise OutOfRangeError(f"flash: the gas would be a liquid ({where})")
     raise ComputationError(f"flash: no convergence ({where})")

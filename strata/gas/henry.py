@@ -1,7 +1,7 @@
 """Henry's constants and salting-out as compiled formulas on one row of the table of gases.
 
-The public functions are in ``solubility.py``.  Full entries of the sources named in brackets are in
-``docs/reference/sources.md``.
+The public functions are in ``solubility.py``.  Full entries of the sources named in brackets
+are in ``docs/reference/sources.md``.
 """
 
 import math
@@ -52,9 +52,7 @@ def salting_out_of_row(t, s, alk, row, laws):
     equivalents = 1e-3 * max(s * (0.998 + 0.75e-3 * s) / laws[at.ION_MASS], alk)
     if laws[at.SALTING_MODE] == 1.0:
         of_gas = row[at.SALTING] + row[at.SALTING_SLOPE] * (t - 25.0)
-        return 10.0 ** (
-            equivalents * (laws[at.SALTING_PART] + laws[at.ION_NUMBER] * of_gas)
-        )
+        return 10.0 ** (equivalents * (laws[at.SALTING_PART] + laws[at.ION_NUMBER] * of_gas))
     water_share = (1.0 + 0.75e-3 * s) * (1.0 - 1e-3 * s)
     strength = laws[at.ION_STRENGTH] * equivalents
     return 10.0 ** (row[at.SALTING_GENERIC] * strength) / water_share

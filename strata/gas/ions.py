@@ -1,8 +1,8 @@
 """What salinity means for gas and carbonate: the ions of a bicarbonate lake.
 
-The rule: the ions are bicarbonate with sodium, of whose place magnesium and calcium take the shares
-that the site gives (of the cation equivalents).  Salinity is their mass, so it gives the
-equivalents; where alkalinity says that there are more, alkalinity counts.
+The rule: the ions are bicarbonate with sodium, of whose place magnesium and calcium take the
+shares that the site gives (of the cation equivalents).  Salinity is their mass, so it gives
+the equivalents; where alkalinity says that there are more, alkalinity counts.
 """
 
 from strata.compiled import compiled
@@ -24,7 +24,9 @@ _BICARBONATE = 0.0967
 def mass_per_equivalent(mg_share, ca_share):
     """Return the mass of ions [kg] per mole of cation equivalents."""
     sodium = 1.0 - mg_share - ca_share
-    cations = sodium * SODIUM_MASS + 0.5 * (mg_share * MAGNESIUM_MASS + ca_share * CALCIUM_MASS)
+    cations = sodium * SODIUM_MASS + 0.5 * (
+        mg_share * MAGNESIUM_MASS + ca_share * CALCIUM_MASS
+    )
     return cations + BICARBONATE_MASS
 
 
@@ -46,5 +48,7 @@ def ionic_strength_of(s, alk, mg_share, ca_share):
 def salting_of_ions(mg_share, ca_share):
     """Return the ions' part of the salting-out [m3/kmol] and their number, per equivalent."""
     sodium = 1.0 - mg_share - ca_share
-    part = sodium * _SODIUM + 0.5 * (mg_share * _MAGNESIUM + ca_share * _CALCIUM) + _BICARBONATE
+    part = (
+        sodium * _SODIUM + 0.5 * (mg_share * _MAGNESIUM + ca_share * _CALCIUM) + _BICARBONATE
+    )
     return part, 2.0 - 0.5 * (mg_share + ca_share)

@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import asdict, dataclass, fields
-from typing import Any
+from typing import Any, TypeAlias
 
 from strata import ranges
 from strata.errors import OutOfRangeError
@@ -22,6 +22,10 @@ _SALTING_OUT = {
 _GAS_PHASE = {PENG_ROBINSON: PENG_ROBINSON, IDEAL: IDEAL}
 
 
+#: What a public function takes as ``laws``.
+LawsLike: TypeAlias = "Laws | Mapping[str, Any] | None"
+
+
 @dataclass(frozen=True)
 class Laws:
     """Corrections to Henry's law and the ideal gas.
@@ -29,11 +33,11 @@ class Laws:
     Parameters
     ----------
     salting_out : {"weisenberger-schumpe", "generic", "none"}
-        By ions after [Weisenberger & Schumpe 1996], which governs; by 0.1 x ionic strength, the
-        weaker rule of thumb; or not at all (also ``False``).
+        By ions after [Weisenberger & Schumpe 1996], which governs; by 0.1 x ionic strength,
+        the weaker rule of thumb; or not at all (also ``False``).
     pressure_term : bool
-        The partial molar volumes: Henry's constants rise with pressure, the dissolved gases take
-        their own room in the water, and the vapour pressure has its Poynting factor.
+        The partial molar volumes: Henry's constants rise with pressure, the dissolved gases
+        take their own room in the water, and the vapour pressure has its Poynting factor.
     gas_phase : {"peng-robinson", "ideal"}
         Fugacity coefficients of the gas mixture.
     k_ij : float
@@ -58,27 +62,33 @@ class Laws:
         ranges.named("law gas_phase", self.gas_phase, _GAS_PHASE)
         for name in ("pressure_term", "water_vapour"):
             if not isinstance(getattr(self, name), bool):
-                raise OutOfRangeError(f"law {name} is {getattr(self, name)!r}; true or false is allowed")
+                raise OutOfRangeError(
+                    f"law {name} is {getattr(self, name)!r}; true or false is allowed"
+                )
         ranges.within("law k_ij", self.k_ij, (-0.5, 0.5), "", "Peng & Robinson 1976")
         both = self.magnesium_share + self.calcium_share
         for name in ("magnesium_share", "calcium_share"):
-            ranges.within(f"law {name}", getattr(self, name), (0.0, 1.0), "", "share of cations")
-        ranges.within("magnesium_share + calcium_share", both, (0.0, 1.0), "", "share of cations")
+            ranges.within(
+                f"law {name}", getattr(self, name), (0.0, 1.0), "", "share of cations"
+            )
+        ranges.within(
+            "magnesium_share + calcium_share", both, (0.0, 1.0), "", "share of cations"
+        )
 
     @classmethod
-    def of(cls, laws: "Laws | Mapping[str, Any] | None") -> "Laws":
+    def of(cls, laws: LawsLike) -> "Laws":
         """Return laws from a mapping of names, with the defaults for what it leaves out.
 
         ``False`` stands for "none" and "ideal", ``True`` for the default of a law.
         """
         if laws is None:
             return cls()
-        if isinstance(laws, cls):
+        if isinstance(laws, Laws):
             return laws
         known = {field.name: field for field in fields(cls)}
         off = {"salting_out": NO_SALTING_OUT, "gas_phase": IDEAL}
-        given = {}
-        for name, value in dict(laws).items():
+        given: dict[str, Any] = {}
+        for name, value in laws.items():
             field = ranges.named("law", name, known)
             if name in off and isinstance(value, bool):
                 value = field.default if value else off[name]
@@ -92,5 +102,9 @@ class Laws:
 
 #: Plain Henry's law under a dry ideal gas.
 PLAIN = Laws(
-    salting_out=NO_SALTING_OUT, pressure_term=False, gas_phase=IDEAL, k_ij=0.0, water_vapour=False
+    salting_out=NO_SALTING_OUT,
+    pressure_term=False,
+    gas_phase=IDEAL,
+    k_ij=0.0,
+    water_vapour=False,
 )

@@ -1,7 +1,7 @@
 """CO2 bound as calcite: what a dose of slaked lime does to water.
 
-Ca(OH)2 + CO2 = CaCO3 + H2O until the free CO2 is used up; beyond that it turns bicarbonate into
-carbonate and then leaves free hydroxide.
+Ca(OH)2 + CO2 = CaCO3 + H2O until the free CO2 is used up; beyond that it turns bicarbonate
+into carbonate and then leaves free hydroxide.
 """
 
 from dataclasses import dataclass
@@ -41,7 +41,9 @@ def _dose_rows(t, s, p, dic, alk, dose, calcium, magnesium, approach, out, calci
         row[at.H] = 1e-4
         mono = equivalents_of(s[i], alk[i], 0.0, 0.0) - 2.0 * (magnesium[i] + calcium[i])
         mono = max(mono, 0.0)
-        solve_carbonate(t[i], p[i], dic[i], alk[i], mono, magnesium[i], calcium[i], 0.0, 1e-4, row)
+        solve_carbonate(
+            t[i], p[i], dic[i], alk[i], mono, magnesium[i], calcium[i], 0.0, 1e-4, row
+        )
         free[i] = row[at.CO2]
         after, lime = alk[i] + 2.0 * dose[i], calcium[i] + dose[i]
         solid = 0.0
@@ -49,17 +51,30 @@ def _dose_rows(t, s, p, dic, alk, dose, calcium, magnesium, approach, out, calci
             low, high = 0.0, min(dic[i], lime)
             for _ in range(_HALVINGS):
                 solid = 0.5 * (low + high)
-                if solid == low or solid == high:
+                if solid in (low, high):
                     break
-                if _saturation(t[i], p[i], dic[i], after, mono, magnesium[i], lime, solid, row) > 0:
+                if (
+                    _saturation(
+                        t[i], p[i], dic[i], after, mono, magnesium[i], lime, solid, row
+                    )
+                    > 0
+                ):
                     low = solid
                 else:
                     high = solid
         calcite[i] = approach[i] * solid
         part = calcite[i]
         rounds = solve_carbonate(
-            t[i], p[i], dic[i] - part, after - 2.0 * part, mono, magnesium[i], lime - part, 0.0,
-            row[at.H], row,
+            t[i],
+            p[i],
+            dic[i] - part,
+            after - 2.0 * part,
+            mono,
+            magnesium[i],
+            lime - part,
+            0.0,
+            row[at.H],
+            row,
         )
         if rounds < 0 and bad < 0:
             bad = i
@@ -97,9 +112,10 @@ def dose_lime(
     .. math:: DIC = DIC_0 - x,\quad A = A_0 + 2d - 2x,\quad Ca = Ca_0 + d - x,\qquad
               a_{Ca}\,a_{CO_3} = K_{calcite}
 
-    with the dose d and the calcite formed x, sought by bisection between none and all; water that is
-    not saturated forms none.  Closed to gas; no other mineral forms (water with much magnesium would
-    form brucite above pH 10).  Carbonate system as in :func:`strata.gas.speciate`.
+    with the dose d and the calcite formed x, sought by bisection between none and all; water
+    that is not saturated forms none.  Closed to gas; no other mineral forms (water with much
+    magnesium would form brucite above pH 10).  Carbonate system as in
+    :func:`strata.gas.speciate`.
 
     Parameters
     ----------
@@ -135,7 +151,9 @@ def dose_lime(
     shaped = np.broadcast_arrays(
         ranges.within("temperature", temperature, (0.0, 40.0), "degC", source),
         ranges.within("salinity", salinity, (0.0, 42.0), "g/kg", davies),
-        ranges.within("pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"),
+        ranges.within(
+            "pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"
+        ),
         ranges.within("DIC", dic, (0.0, 3000.0), "mol/m3", "dilute solution"),
         ranges.within("alkalinity", alkalinity, (-100.0, 400.0), "eq/m3", davies),
         ranges.within("lime dose", dose, (0.0, 300.0), "mol/m3", davies),

@@ -18,7 +18,7 @@ from strata.compiled import compiled
 from strata.constants import GAS_CONSTANT, ZERO_CELSIUS
 from strata.errors import OutOfRangeError
 from strata.gas import columns as at
-from strata.gas.laws import Laws
+from strata.gas.laws import Laws, LawsLike
 from strata.gas.table import gas_table
 from strata.species import VAPOUR
 
@@ -85,7 +85,9 @@ def fugacity_rows(t, p, y, rows, roots, pairs, work, ln_phi):
     attraction = a / (_ROOT_EIGHT * b) * math.log((z + _UPPER * b) / (z + _LOWER * b))
     for i in range(n):
         share = rows[i, at.CO_VOLUME] / total_b
-        ln_phi[i] = share * (z - 1.0) - repulsion - attraction * (2.0 * work[i] / total_a - share)
+        ln_phi[i] = (
+            share * (z - 1.0) - repulsion - attraction * (2.0 * work[i] / total_a - share)
+        )
     return z
 
 
@@ -105,7 +107,7 @@ def _gas_state(
     temperature: ArrayLike,
     pressure: ArrayLike,
     composition: Mapping[str, ArrayLike],
-    laws: object,
+    laws: LawsLike,
 ) -> tuple[tuple[str, ...], Array, Array]:
     """Return the names, fugacity coefficients (..., names) and compressibility factor."""
     source = "gas phase, Peng & Robinson 1976"
@@ -113,7 +115,9 @@ def _gas_state(
     p = ranges.within("pressure", pressure, (0.0, 6.2e6), "Pa", source)
     gases = tuple(gas for gas in composition if gas != VAPOUR)
     shares = [
-        ranges.within(f"mole fraction of {gas}", composition.get(gas, 0.0), (0.0, 1.0), "", source)
+        ranges.within(
+            f"mole fraction of {gas}", composition.get(gas, 0.0), (0.0, 1.0), "", source
+        )
         for gas in (*gases, VAPOUR)
     ]
     t, p, *shares = np.broadcast_arrays(t, p, *shares)
@@ -141,7 +145,7 @@ def fugacity_coefficients(
     temperature: ArrayLike,
     pressure: ArrayLike,
     composition: Mapping[str, ArrayLike],
-    laws: object = None,
+    laws: LawsLike = None,
 ) -> dict[str, Array]:
     r"""Return the fugacity coefficient of every component of a gas.
 
@@ -181,7 +185,7 @@ def compressibility_factor(
     temperature: ArrayLike,
     pressure: ArrayLike,
     composition: Mapping[str, ArrayLike],
-    laws: object = None,
+    laws: LawsLike = None,
 ) -> Array:
     """Return Z = P v / (R T) of a gas; arguments as :func:`fugacity_coefficients`."""
     return _gas_state(temperature, pressure, composition, laws)[2]

@@ -1,7 +1,7 @@
 """How much gas water holds: Henry's constants for the gases in the lake.
 
-Pure water, then salting-out.  What pressure and a real gas phase change is in the modules of the
-bubble point and the flash.  Full entries of the sources named in brackets are in
+Pure water, then salting-out.  What pressure and a real gas phase change is in the modules of
+the bubble point and the flash.  Full entries of the sources named in brackets are in
 ``docs/reference/sources.md``.
 """
 
@@ -11,7 +11,7 @@ from numpy.typing import ArrayLike, NDArray
 from strata import ranges
 from strata.compiled import compiled
 from strata.gas.henry import HIGHEST, henry_of_row, salting_out_of_row
-from strata.gas.laws import Laws
+from strata.gas.laws import Laws, LawsLike
 from strata.gas.table import gas_table
 from strata.species import SPECIES
 
@@ -41,7 +41,7 @@ def _henry_rows(t, s, alk, row, laws, out):
 
 
 def henry_constant(
-    gas: str, temperature: ArrayLike, salinity: ArrayLike = 0.0, laws: object = None
+    gas: str, temperature: ArrayLike, salinity: ArrayLike = 0.0, laws: LawsLike = None
 ) -> Array:
     r"""Return Henry's constant of a gas in lake water.
 
@@ -67,8 +67,8 @@ def henry_constant(
     Returns
     -------
     ndarray
-        Fugacity over concentration at infinite dilution and at the vapour pressure of water (CO2:
-        at 1 atm) [Pa m3 mol-1]; larger is less soluble.
+        Fugacity over concentration at infinite dilution and at the vapour pressure of water
+        (CO2: at 1 atm) [Pa m3 mol-1]; larger is less soluble.
 
     Raises
     ------
@@ -82,7 +82,11 @@ def henry_constant(
     """
     t = checked_temperature(gas, temperature)
     s = ranges.within(
-        "salinity", salinity, SALINITY_RANGE, "g/kg", "salting-out, Weisenberger & Schumpe 1996"
+        "salinity",
+        salinity,
+        SALINITY_RANGE,
+        "g/kg",
+        "salting-out, Weisenberger & Schumpe 1996",
     )
     t, s = np.broadcast_arrays(t, s)
     table = gas_table([gas], Laws.of(laws))
@@ -92,7 +96,7 @@ def henry_constant(
 
 
 def salting_out(
-    gas: str, temperature: ArrayLike, salinity: ArrayLike, laws: object = None
+    gas: str, temperature: ArrayLike, salinity: ArrayLike, laws: LawsLike = None
 ) -> Array:
     """Return what the ions of a salinity multiply Henry's constant by; see there."""
     return henry_constant(gas, temperature, salinity, laws) / henry_constant(gas, temperature)

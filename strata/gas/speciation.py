@@ -4,6 +4,7 @@ Full entries of the sources named in brackets are in ``docs/reference/sources.md
 """
 
 import math
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -33,7 +34,9 @@ _SOURCE = "carbonate constants, Plummer & Busenberg 1982"
 _DAVIES = "activities, Davies 1962"
 
 # Columns of what the solver fills
-PH, CO2, HCO3, CO3, FREE_HCO3, FREE_CO3, H, OH, HS, FREE_CA, STRENGTH, CALCITE, ARAGONITE = range(13)
+PH, CO2, HCO3, CO3, FREE_HCO3, FREE_CO3, H, OH, HS, FREE_CA, STRENGTH, CALCITE, ARAGONITE = (
+    range(13)
+)
 COLUMNS = 13
 
 
@@ -41,8 +44,8 @@ COLUMNS = 13
 def _pair_constants(t):
     """Return the constants [kg/mol] of MgHCO3+, MgCO3, CaHCO3+ and CaCO3 as ions meet.
 
-    Magnesium: [Siebert & Hostetler 1977] as compiled by [Nordstrom et al. 1990]; CaCO3: [Plummer &
-    Busenberg 1982]; CaHCO3+: [Parkhurst & Appelo 2013], weaker than that of 1982.
+    Magnesium: [Siebert & Hostetler 1977] as compiled by [Nordstrom et al. 1990]; CaCO3:
+    [Plummer & Busenberg 1982]; CaHCO3+: [Parkhurst & Appelo 2013], weaker than that of 1982.
     """
     kelvin = t + ZERO_CELSIUS
     lg = math.log10(kelvin)
@@ -58,9 +61,9 @@ def _pair_constants(t):
 def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
     """Fill out with the species [mol m-3] of water of known DIC and alkalinity.
 
-    mono is the sum of cations other than magnesium and calcium; anions other than those of alkalinity
-    balance the charge.  Rounds of the plain solution with what pairs and activities make
-    of the constants.  Returns the number of rounds, negative where they did not settle.
+    mono is the sum of cations other than magnesium and calcium; anions other than those of
+    alkalinity balance the charge.  Rounds of the plain solution with what pairs and activities
+    make of the constants.  Returns the number of rounds, negative where they did not settle.
     """
     water = pure_water_density(t, p)
     cations = mono + 2.0 * (magnesium + calcium)
@@ -87,7 +90,9 @@ def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
             break
         before = strength + free_mg + free_ca + hs
         if paired:
-            free_mg = magnesium / (1.0 + two / water * (pairs[0] * hco3 + pairs[1] * two * co3))
+            free_mg = magnesium / (
+                1.0 + two / water * (pairs[0] * hco3 + pairs[1] * two * co3)
+            )
             free_ca = calcium / (1.0 + two / water * (pairs[2] * hco3 + pairs[3] * two * co3))
         if sulfide > 0.0:
             split = water * math.exp(ln_sulfide - 2.0 * ln_one)
@@ -123,7 +128,9 @@ def _rows(t, s, p, dic, alk, magnesium, calcium, sulfide, out):
     bad = -1
     h = 1e-4
     for i in range(t.size):
-        mono = max(0.0, equivalents_of(s[i], alk[i], 0.0, 0.0) - 2.0 * (magnesium[i] + calcium[i]))
+        mono = max(
+            0.0, equivalents_of(s[i], alk[i], 0.0, 0.0) - 2.0 * (magnesium[i] + calcium[i])
+        )
         rounds = solve_carbonate(
             t[i], p[i], dic[i], alk[i], mono, magnesium[i], calcium[i], sulfide[i], h, out[i]
         )
@@ -166,9 +173,10 @@ def speciate(
 ) -> Speciation:
     """Return the carbonate species of water from DIC and alkalinity.
 
-    Equations and sources stand at the head of ``strata.gas.carbonate``.  The ionic strength is that
-    of the species found, where salinity and alkalinity give the cations by the rule of
-    ``strata.gas.ions``; magnesium and calcium, where given, form pairs with bicarbonate and carbonate.
+    Equations and sources stand at the head of ``strata.gas.carbonate``.  The ionic strength is
+    that of the species found, where salinity and alkalinity give the cations by the rule of
+    ``strata.gas.ions``; magnesium and calcium, where given, form pairs with bicarbonate and
+    carbonate.
 
     Parameters
     ----------
@@ -192,12 +200,14 @@ def speciate(
     --------
     >>> water = speciate(23.0, 5.0, 110.0, 60.0)
     >>> f"pH {float(water.ph):.2f}, {float(water.co2):.1f} mol/m3 of free CO2"
-    'pH 6.36, 50.0 mol/m3 of free CO2'
+    'pH 6.34, 50.0 mol/m3 of free CO2'
     """
     parts = [
         ranges.within("temperature", temperature, (0.0, 40.0), "degC", _SOURCE),
         ranges.within("salinity", salinity, (0.0, 42.0), "g/kg", _DAVIES),
-        ranges.within("pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"),
+        ranges.within(
+            "pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"
+        ),
         ranges.within("DIC", dic, (0.0, 3000.0), "mol/m3", "dilute solution"),
         ranges.within("alkalinity", alkalinity, (-100.0, 400.0), "eq/m3", _DAVIES),
         ranges.within("magnesium", magnesium, (0.0, 200.0), "mol/m3", _DAVIES),
@@ -244,20 +254,18 @@ def dic_of(
 ) -> Array:
     """Return the DIC [mol m-3] of water from its alkalinity and free CO2 [mol m-3], or pH.
 
-    The inverse of :func:`speciate` by bisection: free CO2 rises with DIC and pH falls.  pH must be
-    one that some DIC up to 3000 mol m-3 gives.
+    The inverse of :func:`speciate` by bisection: free CO2 rises with DIC and pH falls.  pH
+    must be one that some DIC up to 3000 mol m-3 gives.
     """
-    if (co2 is None) == (ph is None):
-        raise OutOfRangeError("give either free CO2 or pH with alkalinity")
-    if co2 is not None:
+    if co2 is not None and ph is None:
         aim = ranges.within("free CO2", co2, (0.0, 2500.0), "mol/m3", "dilute solution")
+    elif ph is not None and co2 is None:
+        aim = -ranges.within("pH", ph, (2.0, 13.0), "", _SOURCE)
     else:
-        aim = -ranges.within("pH", ph, (2.0, 13.0), "", _SOURCE)  # type: ignore[arg-type]
+        raise OutOfRangeError("give either free CO2 or pH with alkalinity")
 
     def found(dic: Array) -> Array:
-        water = speciate(
-            t, salinity, dic, alk, pressure, magnesium=magnesium, calcium=calcium
-        )
+        water = speciate(t, salinity, dic, alk, pressure, magnesium=magnesium, calcium=calcium)
         return water.co2 if co2 is not None else -water.ph
 
     t, alk, aim, *_ = np.broadcast_arrays(
@@ -289,12 +297,12 @@ def alkalinity_of(
     return _bisect(found, aim, 400.0, "alkalinity")
 
 
-def _bisect(found, aim: Array, highest: float, what: str) -> Array:  # type: ignore[no-untyped-def]
+def _bisect(found: Callable[[Array], Array], aim: Array, highest: float, what: str) -> Array:
     """Return where a rising function of 0 to highest meets its aim."""
     low, high = np.zeros(aim.shape), np.full(aim.shape, highest)
     if np.any(found(low) > aim) or np.any(found(high) < aim):
         raise OutOfRangeError(
-            f"no {what} from 0 to {highest:g} mol/m3 agrees with what is given of the carbonate"
+            f"no {what} from 0 to {highest:g} mol/m3 agrees with the rest of the carbonate"
         )
     for _ in range(60):
         middle = 0.5 * (low + high)

@@ -29,7 +29,7 @@ class GasTable:
 
 
 def _peng_robinson(temperature: float, pressure: float, factor: float) -> list[float]:
-    """Return the four numbers of a component from its critical point [Peng & Robinson 1976]."""
+    """Return four numbers of a component from its critical point [Peng & Robinson 1976]."""
     root_a = np.sqrt(0.45723553) * GAS_CONSTANT * temperature / np.sqrt(pressure)
     alpha = 0.37464 + factor * (1.54226 - 0.26992 * factor)
     return [root_a, alpha, temperature, 0.07779607 * GAS_CONSTANT * temperature / pressure]
@@ -48,7 +48,7 @@ def _row(gas: str, row: Species) -> list[float]:
     values[at.JOIN] = join_of(row)
     values[at.VOLUME] = row.molar_volume
     values[at.SALTING : at.SALTING_GENERIC + 1] = [*row.salting_out, row.salting_out_generic]
-    values[at.ROOT_A:] = _peng_robinson(
+    values[at.ROOT_A :] = _peng_robinson(
         row.critical_temperature, row.critical_pressure, row.acentric_factor
     )
     return values
@@ -67,7 +67,7 @@ def gas_table(gases: Iterable[str], laws: Laws) -> GasTable:
     order = tuple(gases)
     species = [ranges.named("gas", gas, SPECIES) for gas in order]
     water = [0.0] * at.WIDTH
-    water[at.ROOT_A:] = _peng_robinson(*WATER_CRITICAL)
+    water[at.ROOT_A :] = _peng_robinson(*WATER_CRITICAL)
     pairs = np.ones((len(order) + 1, len(order) + 1))
     for i, row in enumerate(species):
         pairs[i, -1] = pairs[-1, i] = 1.0 - row.water_interaction
@@ -84,5 +84,7 @@ def gas_table(gases: Iterable[str], laws: Laws) -> GasTable:
     vector[at.PRESSURE_TERM] = laws.pressure_term
     vector[at.REAL_GAS] = laws.gas_phase == names.PENG_ROBINSON
     vector[at.WATER_VAPOUR] = laws.water_vapour
-    rows = np.array([_row(gas, row) for gas, row in zip(order, species, strict=True)] + [water])
+    rows = np.array(
+        [_row(gas, row) for gas, row in zip(order, species, strict=True)] + [water]
+    )
     return GasTable(order, rows, pairs, vector)

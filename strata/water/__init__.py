@@ -11,6 +11,11 @@ from strata.water.density import (
     potential_density,
     thermal_expansion,
 )
+from strata.water.salinity import (
+    conductivity_at_25,
+    salinity_from_conductivity,
+    salt_from_ions,
+)
 from strata.water.stability import buoyancy_frequency_squared, standard_gravity
 from strata.water.transport import (
     dynamic_viscosity,
@@ -25,13 +30,16 @@ from strata.water.transport import (
 __all__ = [
     "adiabatic_lapse_rate",
     "buoyancy_frequency_squared",
+    "conductivity_at_25",
     "density",
     "dynamic_viscosity",
     "haline_contraction_at",
     "heat_capacity",
     "kinematic_viscosity",
     "potential_density",
+    "salinity_from_conductivity",
     "salt_diffusion",
+    "salt_from_ions",
     "standard_gravity",
     "thermal_conductivity",
     "thermal_diffusivity",

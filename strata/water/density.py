@@ -28,7 +28,7 @@ _SALT_SOURCE = "salt term fitted to TEOS-10"
 
 @compiled
 def _bulk_modulus(t, q):
-    """Return the secant bulk modulus [bar] of pure water at q bar above 1 atm [UNESCO 1981]."""
+    """Return the bulk modulus [bar] of pure water at q bar above 1 atm [UNESCO 1981]."""
     k = 19652.21 + t * (148.4206 + t * (-2.327105 + t * (1.360477e-2 - t * 5.155288e-5)))
     a = 3.239908 + t * (1.43713e-3 + t * (1.16092e-4 - t * 5.77905e-7))
     b = 8.50935e-5 + t * (-6.12293e-6 + t * 5.2787e-8)
@@ -62,12 +62,12 @@ def _pure_water_expansion(t, p):
 
 @compiled
 def salt_density_excess(t, s, p, haline_contraction):
-    """Return what salt adds to the density of pure water, relative to it; see :func:`density`."""
+    """Return what salt adds to the density of water, relative to it; see :func:`density`."""
     x = t - 20.0
     q = (p - ATMOSPHERE) * 1e-5
-    shape = 1.0 + x * (-2.10565e-3 + x * (5.36066e-5 - x * 4.98758e-7))
-    shape += q * (-1.353523e-4 + x * 1.705249e-6)
-    shape += (math.sqrt(abs(s)) - 2.0) * (-1.828275e-3 + x * 2.89824e-5)
+    shape = 1.0 + x * (-2.106938e-3 + x * (4.430692e-5 + x * (-4.955355e-7 + x * 2.34691e-8)))
+    shape += q * (-1.330068e-4 + x * 1.73319e-6)
+    shape += (math.sqrt(abs(s)) - 2.0) * (-2.10179e-3 + x * 3.073415e-5)
     return haline_contraction * s * shape
 
 
@@ -76,8 +76,8 @@ def _salt_expansion(t, s, p, haline_contraction):
     """Return how far salt raises the thermal expansion [1/K]."""
     x = t - 20.0
     q = (p - ATMOSPHERE) * 1e-5
-    slope = -2.10565e-3 + x * (1.072132e-4 - x * 1.496274e-6) + q * 1.705249e-6
-    slope += (math.sqrt(abs(s)) - 2.0) * 2.89824e-5
+    slope = -2.106938e-3 + x * (8.861384e-5 + x * (-1.4866065e-6 + x * 9.38764e-8))
+    slope += q * 1.73319e-6 + (math.sqrt(abs(s)) - 2.0) * 3.073415e-5
     return -haline_contraction * s * slope
 
 
@@ -101,18 +101,11 @@ def lapse_rate(t, s, p):
 
 
 @compiled
-def _fresh_lapse_rate(t, p):
-    """Return the lapse rate [K/Pa] of water of 2 g/kg by a cubic, for the time loop.
-
-    Fitted to :func:`lapse_rate` over 0-40 degC and 0-60 bar; see ``docs/validation``.
-    """
-    return _LAPSE_PLACEHOLDER
-@compiled
 def _adiabatic_warming(theta, p):
     """Return in-situ minus potential temperature [K].
 
-    Polynomial for the integral of :func:`lapse_rate` of fresh water from 1 atm, within 2e-5 K of
-    it over 0-40 degC and 1-60 bar.
+    Polynomial for the integral of :func:`lapse_rate` of fresh water from 1 atm, within 2e-5 K
+    of it over 0-40 degC and 1-60 bar.
     """
     q = (p - ATMOSPHERE) * 1e-5
     g = -4.38297841e-4 + theta * (
@@ -125,7 +118,7 @@ def _adiabatic_warming(theta, p):
 
 @compiled
 def in_situ_temperature(theta, p):
-    """Return the temperature [degC] of water of potential temperature theta at pressure p [Pa].
+    """Return the in-situ temperature [degC] of water of potential temperature theta.
 
     The potential temperature is that at 1 atm.  Warming of fresh water; salt of 6 g/kg would
     change it by less than 0.004 K at 50 bar.
@@ -135,7 +128,7 @@ def in_situ_temperature(theta, p):
 
 @compiled
 def potential_temperature(t, p):
-    """Return the temperature [degC] that water would have at 1 atm: inverse of the function above."""
+    """Return the temperature [degC] that water would have at 1 atm: inverse of the above."""
     theta = t - _adiabatic_warming(t, p)
     theta = t - _adiabatic_warming(theta, p)
     theta = t - _adiabatic_warming(theta, p)
@@ -176,7 +169,9 @@ def gas_mass_and_volume(
     volume: Array = np.zeros(())
     for gas, value in (dissolved or {}).items():
         row = ranges.named("dissolved gas", gas, SPECIES)
-        amount = ranges.within(f"dissolved {gas}", value, (0.0, 3000.0), "mol/m3", "dilute solution")
+        amount = ranges.within(
+            f"dissolved {gas}", value, (0.0, 3000.0), "mol/m3", "dilute solution"
+        )
         molar_volume = row.molar_volume
         if gas == "CO2" and co2_molar_volume is not None:
             molar_volume = co2_molar_volume
@@ -185,7 +180,9 @@ def gas_mass_and_volume(
     return mass, volume
 
 
-def _checked(temperature: ArrayLike, salinity: ArrayLike, pressure: ArrayLike) -> tuple[Array, ...]:
+def _checked(
+    temperature: ArrayLike, salinity: ArrayLike, pressure: ArrayLike
+) -> tuple[Array, ...]:
     """Return temperature, salinity and pressure inside the ranges of the density."""
     return (
         ranges.within("temperature", temperature, TEMPERATURE_RANGE, "degC", _SOURCE),
@@ -207,9 +204,9 @@ def density(
     .. math:: \rho = \rho_w(T,p)\,\bigl(1 + h\,S\,f(T,p,S)\bigr)
               \Bigl(1 - \sum_i c_i V_i\Bigr) + \sum_i c_i M_i
 
-    :math:`\rho_w` is pure water at 1 atm [Tanaka et al. 2001] carried to pressure with the secant
-    bulk modulus of [UNESCO 1981].  The salt term takes the contraction h of the site's ions, at
-    20 degC, 1 atm and 4 g/kg; how it changes with temperature, pressure and salinity
+    :math:`\rho_w` is pure water at 1 atm [Tanaka et al. 2001] carried to pressure with the
+    secant bulk modulus of [UNESCO 1981].  The salt term takes the contraction h of the site's
+    ions, at 20 degC, 1 atm and 4 g/kg; how it changes with temperature, pressure and salinity
     (f = 1 at that point) is fitted to sea salt in TEOS-10 [Roquet et al. 2015].
 
     Parameters
@@ -223,7 +220,7 @@ def density(
     dissolved : mapping of str to array_like, optional
         Gas concentrations [mol m-3]; "CO2" is the free gas.
     haline_contraction : float, optional
-        h [kg g-1]: 0.72e-3 (NaCl) to 0.81e-3 (magnesium bicarbonate); sea salt 0.7583e-3.
+        h [kg g-1]: 0.72e-3 (NaCl) to 0.81e-3 (magnesium bicarbonate); sea salt 0.7587e-3.
     co2_molar_volume : float, optional
         Partial molar volume of CO2 [m3 mol-1]; 31.4e-6 to 35.9e-6 in the literature.
 
@@ -279,7 +276,7 @@ def thermal_expansion(
     pressure: ArrayLike,
     haline_contraction: float = HALINE_CONTRACTION,
 ) -> Array:
-    """Return -(1/rho) d rho/dT [1/K] at constant pressure, with respect to in-situ temperature.
+    """Return -(1/rho) d rho/dT [1/K] at constant pressure and salinity, T in situ.
 
     The exact derivative of :func:`density` of water without gas; arguments as there.
     """
@@ -292,7 +289,7 @@ def thermal_expansion(
 def _contraction(t, s, p, haline_contraction):
     """Return the local haline contraction [kg/g]."""
     at_four = salt_density_excess(t, 4.0, p, haline_contraction) / 4.0
-    of_root = haline_contraction * (-1.828275e-3 + (t - 20.0) * 2.89824e-5)
+    of_root = haline_contraction * (-2.10179e-3 + (t - 20.0) * 3.073415e-5)
     slope = at_four + of_root * (1.5 * math.sqrt(abs(s)) - 2.0)
     return slope / (1.0 + salt_density_excess(t, s, p, haline_contraction))
 

@@ -44,8 +44,8 @@ def buoyancy_frequency_squared(
     .. math:: N^2 = \frac{g}{\bar\rho}\,
               \frac{\rho_{i+1}(\bar p) - \rho_i(\bar p)}{z_{i+1} - z_i}
 
-    Both parcels are brought adiabatically to the pressure halfway, so that the lapse rate and the
-    compressibility are in it.  Negative where the water is unstable.
+    Both parcels are brought adiabatically to the pressure halfway, so that the lapse rate and
+    the compressibility are in it.  Negative where the water is unstable.
 
     Parameters
     ----------

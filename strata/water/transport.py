@@ -40,7 +40,11 @@ def vapour_pressure(temperature: ArrayLike) -> Array:
     [Wagner & Pruss 1993], the equation that the guideline [IAPWS G7-04] builds on.
     """
     t = ranges.within(
-        "temperature", temperature, (0.0, 100.0), "degC", "vapour pressure, Wagner & Pruss 1993"
+        "temperature",
+        temperature,
+        (0.0, 100.0),
+        "degC",
+        "vapour pressure, Wagner & Pruss 1993",
     )
     result: Array = broadcast(vapour_pressure_at)(t)
     return result
@@ -50,7 +54,9 @@ def vapour_pressure(temperature: ArrayLike) -> Array:
 def dynamic_viscosity_at(t):
     """Return the viscosity [Pa s] of pure water; see :func:`dynamic_viscosity`."""
     x = (t + ZERO_CELSIUS) / 300.0
-    return 1e-6 * (280.68 * x**-1.9 + 511.45 * x**-7.7 + 61.131 * x**-19.6 + 0.45903 * x**-40.0)
+    return 1e-6 * (
+        280.68 * x**-1.9 + 511.45 * x**-7.7 + 61.131 * x**-19.6 + 0.45903 * x**-40.0
+    )
 
 
 def dynamic_viscosity(temperature: ArrayLike) -> Array:
@@ -102,8 +108,8 @@ def heat_capacity(
 ) -> Array:
     """Return the specific heat of lake water at constant pressure [J kg-1 K-1].
 
-    Polynomials in temperature, salinity and pressure of [Fofonoff & Millard 1983], which rest on
-    [Millero, Perron & Desnoyers 1973]; 0 to 40 degC, 0 to 42 g/kg, up to 62 bar.
+    Polynomials in temperature, salinity and pressure of [Fofonoff & Millard 1983], which rest
+    on [Millero, Perron & Desnoyers 1973]; 0 to 40 degC, 0 to 42 g/kg, up to 62 bar.
     """
     source = "specific heat of Fofonoff & Millard 1983"
     t = ranges.within("temperature", temperature, _LIQUID, "degC", source)
@@ -117,10 +123,13 @@ def heat_capacity(
 def heat_diffusivity(t):
     """Return the thermal diffusivity [m2/s] of fresh water at 1 atm, for the time loop.
 
-    Quartic for conductivity over density and specific heat, within 0.001 % of their quotient over
-    0-40 degC; see :func:`thermal_diffusivity`.
+    Quartic for conductivity over density and specific heat, within 0.001 % of their quotient
+    over 0-40 degC; see :func:`thermal_diffusivity`.
     """
-    return 1e-7 * (1.31772741 + t * (7.1526202e-3 + t * (-9.3853460e-5 + t * (1.37925967e-6 - t * 1.01606847e-8))))
+    return 1e-7 * (
+        1.31772741
+        + t * (7.1526202e-3 + t * (-9.3853460e-5 + t * (1.37925967e-6 - t * 1.01606847e-8)))
+    )
 
 
 def thermal_diffusivity(temperature: ArrayLike) -> Array:
@@ -149,9 +158,9 @@ def salt_diffusion(temperature: ArrayLike) -> Array:
     .. math:: D = \frac{2 D_+ D_-}{D_+ + D_-}\quad\text{at 25 degC},\qquad
               D \propto e^{-E_a/RT},\ E_a = 18.97\ \mathrm{kJ/mol}
 
-    Nernst-Hartley relation with the ion diffusivities of [Robinson & Stokes 1959]; the activation
-    energy is that of the same relation between 5 and 30 degC.  Magnesium and calcium bicarbonate
-    are 20 % slower, sodium chloride 29 % faster.
+    Nernst-Hartley relation with the ion diffusivities of [Robinson & Stokes 1959]; the
+    activation energy is that of the same relation between 5 and 30 degC.  Magnesium and
+    calcium bicarbonate are 20 % slower, sodium chloride 29 % faster.
     """
     t = ranges.within("temperature", temperature, _LIQUID, "degC", "Nernst-Hartley relation")
     result: Array = broadcast(salt_diffusivity)(t)

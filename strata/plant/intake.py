@@ -1,7 +1,7 @@
 """Which layers an intake draws from.
 
-A point sink in stratified water draws from a layer of half-thickness (Q / N)^(1/3), each half by
-its own stratification (Imberger 1980); see :mod:`strata.water.intrusion`.
+A point sink in stratified water draws from a layer of half-thickness (Q / N)^(1/3), each half
+by its own stratification (Imberger 1980); see :mod:`strata.water.intrusion`.
 """
 
 from collections.abc import Iterable
@@ -30,8 +30,8 @@ def withdrawal_weights(
     Returns
     -------
     ndarray, shape (n,)
-        Weights that sum to 1.  They reach no further than the stratification lets them: where N
-        is small the layer is thick, and ends at the neighbouring gradients.
+        Weights that sum to 1.  They reach no further than the stratification lets them: where
+        N is small the layer is thick, and ends at the neighbouring gradients.
     """
     return layer_shares(
         np.ascontiguousarray(face_depth, dtype=np.float64),

@@ -1,8 +1,8 @@
 """What an operator plans: the frozen description of plants and their timetable.
 
 Built by ``strata.inputs`` from a plan file; nothing here reads a file.  SI units, pressures
-absolute, temperature in degC, concentrations in mol m-3, depth in m, positive down.  Everything
-but the intake, the flow, the stages, the return and the start has a default that keeps a simple
+absolute, temperature in degC, concentrations in mol m-3, depth in m, positive down.  All but
+the intake, the flow, the stages, the return and the start has a default that keeps a simple
 plan simple.
 """
 
@@ -38,7 +38,7 @@ class Stage:
     gas_to: str = "product"  # "product", "wash", "vent" or "return" (dissolved again at depth)
     residence_time: float | None = None  # s; with mass_transfer it sets the approach instead
     mass_transfer: float | None = None  # s-1, k_L a
-    carry_under: float = 0.0  # share of the released gas that goes on with the water as bubbles
+    carry_under: float = 0.0  # share of the released gas that goes on with the water
 
 
 @dataclass(frozen=True)
@@ -79,7 +79,7 @@ class Return:
 class Delivery:
     """What is done with the gas after the plant, and with what efficiency."""
 
-    product_pressure: float | None = None  # Pa; None is the pressure of the last unit, or the air
+    product_pressure: float | None = None  # Pa; None: as it comes, or air's
     compressor_stages: int = 1  # of the product compressor
     cooling_temperature: float = 30.0  # degC, between compressor stages
     auxiliary_power: float = 0.0  # W, of all else

@@ -1,9 +1,9 @@
 """What the gas is worth and what moving water and gas costs.
 
-Heating value and Wobbe index of the product; pumps; compressors, isentropic with an efficiency,
-in stages with cooling between them.  Gas is compressed along the isentrope of a virial gas: heat
-capacities of the ideal gas as polynomials and the second virial coefficient after Pitzer.  Sources
-in full are in ``docs/reference/sources.md``.
+Heating value and Wobbe index of the product; pumps; compressors, isentropic with an
+efficiency, in stages with cooling between them.  Gas is compressed along the isentrope of a
+virial gas: its heat capacities are polynomials, its second virial coefficient is Pitzer's.
+Sources in full are in ``docs/reference/sources.md``.
 """
 
 import math
@@ -24,7 +24,7 @@ SECONDS_PER_YEAR = 365.25 * 86400.0
 METHANE_WARMING = 27.9
 
 # Cp / R of the ideal gas, a0 + a1 T + ... + a4 T^4 with T in K, 50 or 200 to 1000 K (Poling,
-# Prausnitz & O'Connell 2001, recalled; compared with reference equations of state in the tests).
+# Prausnitz & O'Connell 2001, recalled; the tests compare them with reference equations).
 _HEAT_CAPACITY = {
     "CH4": (4.568, -8.975e-3, 3.631e-5, -3.407e-8, 1.091e-11),
     "CO2": (3.259, 1.356e-3, 1.502e-5, -2.374e-8, 1.056e-11),
@@ -37,11 +37,11 @@ _HEAT_CAPACITY = {
 _NAMES = tuple(_HEAT_CAPACITY)
 _CRITICAL = np.array(
     [
-        (SPECIES[g].critical_temperature, SPECIES[g].critical_pressure, SPECIES[g].acentric_factor)
-        if g in SPECIES
-        else WATER_CRITICAL
-        for g in _NAMES
+        (row.critical_temperature, row.critical_pressure, row.acentric_factor)
+        for row in map(SPECIES.get, _NAMES)
+        if row is not None
     ]
+    + [WATER_CRITICAL]
 )
 _COEFFICIENTS = np.array([_HEAT_CAPACITY[g] for g in _NAMES])
 
@@ -169,7 +169,7 @@ def thermal_power(gas: GasStream) -> float:
 
 
 def wobbe_index(gas: GasStream) -> float:
-    """Return the lower Wobbe index [J per normal m3]: heating value over root relative density."""
+    """Return the lower Wobbe index [J per normal m3], heating value over root of density."""
     if gas.dry <= 0.0:
         return 0.0
     return heating_value(gas) / math.sqrt(gas.molar_mass / AIR_MASS)

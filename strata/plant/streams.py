@@ -1,7 +1,7 @@
 """The only two things that pass between the units of a plant: water and gas, per second.
 
-A unit maps streams to streams; :func:`element_flows` is what its balance is struck in.  Argon is
-no tracer of the lake: water carries it in step with its nitrogen.
+A unit maps streams to streams; :func:`element_flows` is what its balance is struck in.  Argon
+is no tracer of the lake: water carries it in step with its nitrogen.
 """
 
 from collections.abc import Iterable, Mapping
@@ -70,7 +70,9 @@ class GasStream:
     @property
     def molar_mass(self) -> float:
         """Return the mean molar mass of the dry gas [kg/mol]; 0 where there is no gas."""
-        mass = sum(n * SPECIES[gas].molar_mass for gas, n in self.flows.items() if gas != VAPOUR)
+        mass = sum(
+            flow * SPECIES[gas].molar_mass for gas, flow in self.flows.items() if gas != VAPOUR
+        )
         return mass / self.dry if self.dry > 0.0 else 0.0
 
 
@@ -114,7 +116,9 @@ def joined_water(streams: Iterable[WaterStream]) -> WaterStream:
 
 
 def element_flows(
-    water: Iterable[WaterStream] = (), gas: Iterable[GasStream] = (), calcite: float = 0.0,
+    water: Iterable[WaterStream] = (),
+    gas: Iterable[GasStream] = (),
+    calcite: float = 0.0,
     lime: float = 0.0,
 ) -> dict[str, float]:
     """Return what water, gas, calcite and lime [mol/s] carry of each element [mol/s].

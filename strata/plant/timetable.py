@@ -1,7 +1,7 @@
 """When a plant runs, how hard, and with which settings.
 
-A plant's settings are a function of the day: dated changes and outages turn one frozen plant into
-another.  Its load is the product of ramp, availability and season.
+A plant's settings are a function of the day: dated changes and outages turn one frozen plant
+into another.  Its load is the product of ramp, availability and season.
 """
 
 from collections.abc import Iterable
@@ -18,8 +18,8 @@ RAMP_STEPS = 12  # events along a ramp; between them the load is held
 def load_factor(plant: Plant, day: date) -> float:
     """Return the share of its full flow that a plant takes on a day.
 
-    The ramp rises evenly from the start; availability and the month's availability multiply it.
-    A plant that is down as a whole takes nothing.
+    The ramp rises evenly from the start; availability and the month's availability multiply
+    it. A plant that is down as a whole takes nothing.
     """
     if day < plant.start or (plant.stop is not None and day >= plant.stop):
         return 0.0
@@ -58,8 +58,8 @@ def event_dates(plant: Plant, begin: date, end: date) -> list[date]:
 def plant_on(plant: Plant, day: date) -> Plant:
     """Return a plant as it is set on a day: dated changes made, parts out of order taken out.
 
-    Without its wash the raw gas bypasses the tower; without lime the feed goes as it is; without
-    a stage the water goes on to the next.
+    Without its wash the raw gas bypasses the tower; without lime the feed goes as it is;
+    without a stage the water goes on to the next.
     """
     for change in sorted(plant.changes, key=lambda change: change.start):
         if change.start <= day:
@@ -104,7 +104,7 @@ def _with(item: Any, names: Iterable[str], value: object, path: str) -> Any:
     if isinstance(item, tuple) and name.isdigit() and 1 <= int(name) <= len(item):
         index = int(name) - 1
         new = _with(item[index], rest, value, path) if rest else value
-        return item[:index] + (new,) + item[index + 1 :]
+        return (*item[:index], new, *item[index + 1 :])
     if is_dataclass(item) and name in {field.name for field in fields(item)}:
         new = _with(getattr(item, name), rest, value, path) if rest else value
         return replace(item, **{name: new})  # type: ignore[type-var]

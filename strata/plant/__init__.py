@@ -1,0 +1,1 @@
+"""The plant: what is done to the water between intake and return, and to the gas."""

@@ -1,0 +1,316 @@
+"""A plant at work: from its feed to return water, product and vent, and what it all costs.
+
+The units are in the modules beside this one.  Here they are put in order, gas is routed, power
+is added up and the balance of every element is struck over the whole plant.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field, replace
+
+from strata.errors import ComputationError
+from strata.gas import bubble_point, speciate
+from strata.lake.site import Site
+from strata.plant import power
+from strata.plant.chemistry import density_of, free_gases, laws_of
+from strata.plant.lime import KILN_CARBON_DIOXIDE, LimedStream, add_lime
+from strata.plant.plan import Plant, Return
+from strata.plant.riser import pump_pressure
+from strata.plant.separator import run_train
+from strata.plant.streams import (
+    NO_GAS,
+    GasStream,
+    WaterStream,
+    element_flows,
+    imbalance,
+    joined_gas,
+    joined_water,
+)
+from strata.plant.wash import wash_gas
+from strata.species import VAPOUR
+from strata.water.stability import standard_gravity
+
+#: Largest relative error in the balance of an element before a plant refuses to go on.
+BALANCE = 1e-10
+#: log10 of calcite saturation above which pipes and packing scale within weeks (practice).
+SCALING = 0.3
+
+
+@dataclass(frozen=True)
+class Operation:
+    """What a plant makes of its feed, per second."""
+
+    returned: WaterStream  # the feed, treated
+    wash_returned: WaterStream | None  # wash water, used; None without a wash
+    product: GasStream
+    vented: GasStream
+    lime: float  # mol/s of Ca(OH)2
+    solids: float  # mol/s of calcite taken out
+    kiln_carbon_dioxide: float  # mol/s given off in making the lime
+    power: Mapping[
+        str, float
+    ]  # W by name; "electric" is made, "net" is left, all else is used
+    balance: Mapping[str, float]  # element -> (in - out) / throughput
+    warnings: tuple[str, ...]
+    streams: Mapping[str, WaterStream | GasStream] = field(default_factory=dict)
+
+    @property
+    def recovery(self) -> float:
+        """Return the share of the methane fed that is in the product."""
+        fed = self.streams["feed"]
+        methane = fed.flow * fed.of("CH4")  # type: ignore[union-attr]
+        return self.product.of("CH4") / methane if methane > 0.0 else 0.0
+
+
+def operate(
+    plant: Plant, feed: WaterStream, wash_feed: WaterStream | None, site: Site
+) -> Operation:
+    """Return what a plant does with its feed and wash water.
+
+    Parameters
+    ----------
+    plant : Plant
+        As set on the day (``timetable.plant_on``).
+    feed, wash_feed : WaterStream
+        What intake and wash intake draw, at the load of the day.
+    site : Site
+
+    Raises
+    ------
+    strata.OutOfRangeError, strata.ComputationError
+        If a unit cannot do what is asked of it, naming plant and unit; or if an element does
+        not balance to 1e-10.
+    """
+    limed = LimedStream(feed) if plant.lime is None else add_lime(plant.lime, feed, site)
+    water, gases = run_train(plant.stages, limed.water, site, f"plant {plant.name}, ")
+    routed = {
+        way: [
+            gas for gas, stage in zip(gases, plant.stages, strict=True) if stage.gas_to == way
+        ]
+        for way in ("product", "wash", "vent", "return")
+    }
+    used = {"auxiliary": plant.delivery.auxiliary_power}
+    washed_water, washed_gas = wash_feed, []
+    if plant.wash is not None and wash_feed is not None:
+        raw = _brought_to(plant, routed["wash"], plant.wash.pressure, site, used)
+        done = wash_gas(plant.wash, raw, wash_feed, site, f"plant {plant.name}, wash")
+        washed_water, washed_gas = done.water, [done.gas]
+    product = _delivered(plant, [*routed["product"], *washed_gas], site, used)
+    vented = _brought_to(plant, routed["vent"], site.air_pressure, site, used)
+    back, water = _dissolved_again(plant, routed["return"], water, site, used)
+    water = replace(
+        water, temperature=water.temperature + plant.return_water.temperature_change
+    )
+    if washed_water is not None and plant.return_wash is not None:
+        washed_water = replace(
+            washed_water,
+            temperature=washed_water.temperature + plant.return_wash.temperature_change,
+        )
+    used["pump"] = float(_pumping(plant, feed, limed.water, wash_feed, site))
+    electric = plant.electric_efficiency * power.thermal_power(product)
+    used_sum = sum(used.values())
+    balance = imbalance(
+        element_flows([feed, *([wash_feed] if wash_feed else [])], lime=limed.lime),
+        element_flows(
+            [water, *([washed_water] if washed_water else [])],
+            [product, vented],
+            limed.settled,
+        ),
+    )
+    _check(plant, balance)
+    streams: dict[str, WaterStream | GasStream] = {"feed": feed}
+    if plant.lime is not None:
+        streams["limed feed"] = limed.water
+    streams |= {f"gas of stage {n}": gas for n, gas in enumerate(gases, 1)}
+    if wash_feed is not None and washed_water is not None:
+        streams |= {"wash water": wash_feed, "used wash water": washed_water}
+    streams |= {"return water": water, "product": product, "vent": vented}
+    return Operation(
+        water,
+        washed_water,
+        product,
+        vented,
+        limed.lime,
+        limed.settled,
+        limed.lime * KILN_CARBON_DIOXIDE,
+        {**used, "electric": electric, "net": electric - used_sum},
+        balance,
+        _warnings(plant, limed, feed, water, back, site),
+        streams,
+    )
+
+
+def _brought_to(
+    plant: Plant, gases: list[GasStream], pressure: float, site: Site, used: dict[str, float]
+) -> GasStream:
+    """Return gases joined at a pressure; what compression costs is added to ``used``.
+
+    Up to the pressure of the air it counts as vacuum, above as compression.
+    """
+    for gas in gases:
+        whole = _compression(plant, gas, pressure)
+        vacuum = _compression(plant, gas, min(site.air_pressure, pressure))
+        used["vacuum"] = used.get("vacuum", 0.0) + vacuum
+        used["compression"] = used.get("compression", 0.0) + whole - vacuum
+    return joined_gas(gases, pressure)
+
+
+def _compression(plant: Plant, gas: GasStream, pressure: float) -> float:
+    """Return the power to bring one stream to a pressure [W]."""
+    delivery = plant.delivery
+    return power.compression_power(
+        gas,
+        pressure,
+        plant.compressor_efficiency,
+        delivery.compressor_stages,
+        delivery.cooling_temperature,
+    )
+
+
+def _delivered(
+    plant: Plant, gases: list[GasStream], site: Site, used: dict[str, float]
+) -> GasStream:
+    """Return the product at its pressure: as asked, or that of its weakest part or the air."""
+    parts = [gas for gas in gases if gas.total > 0.0]
+    if not parts:
+        return NO_GAS
+    asked = plant.delivery.product_pressure
+    lowest = max(site.air_pressure, min(gas.pressure for gas in parts))
+    return _brought_to(plant, parts, lowest if asked is None else asked, site, used)
+
+
+def _dissolved_again(
+    plant: Plant,
+    gases: list[GasStream],
+    water: WaterStream,
+    site: Site,
+    used: dict[str, float],
+) -> tuple[bool, WaterStream]:
+    """Return whether gas put back into the return water stays in it, and the water."""
+    depth = plant.return_water.depth
+    pressure = site.air_pressure + 1000.0 * standard_gravity(site.latitude) * depth
+    gas = _brought_to(plant, gases, pressure, site, used) if gases else NO_GAS
+    if gas.dry <= 0.0:
+        return True, water
+    added = {
+        ("DIC" if name == "CO2" else name): flow / water.flow
+        for name, flow in gas.flows.items()
+        if name not in (VAPOUR, "Ar")
+    }
+    fuller = water.changed(**{name: water.of(name) + x for name, x in added.items()})
+    held = free_gases(fuller, site, pressure).gases
+    needed = bubble_point(fuller.temperature, fuller.salinity, held, laws_of(site)).pressure
+    return bool(needed < pressure), fuller
+
+
+def _pumping(
+    plant: Plant,
+    feed: WaterStream,
+    limed: WaterStream,
+    wash_feed: WaterStream | None,
+    site: Site,
+) -> float:
+    """Return the power of all pumps [W].
+
+    Feed: what the riser asks for, or without one a head of ``pump_head`` and the pressure of
+    the first stage above the air's.  Water that leaves the last stage under vacuum is
+    brought back to the pressure of the air; wash water to that of its tower.
+    """
+    first, last = plant.stages[0].pressure, plant.stages[-1].pressure
+    if plant.riser is None:
+        head = 1000.0 * standard_gravity(site.latitude) * plant.pump_head
+        rise = head + max(first - site.air_pressure, 0.0)
+    else:
+        rise = _riser_pressure(plant, limed, site)
+    total = power.pump_power(feed.flow, rise, plant.pump_efficiency)
+    total += power.pump_power(feed.flow, site.air_pressure - last, plant.pump_efficiency)
+    if plant.wash is not None and wash_feed is not None:
+        total += power.pump_power(
+            wash_feed.flow, plant.wash.pressure - site.air_pressure, plant.pump_efficiency
+        )
+    return total
+
+
+def _riser_pressure(plant: Plant, water: WaterStream, site: Site) -> float:
+    """Return what the pumps of the risers must add [Pa]; negative is throttled away."""
+    assert plant.riser is not None
+    gravity = standard_gravity(site.latitude)
+    foot = site.air_pressure + gravity * plant.intake_depth * density_of(
+        water, site, site.air_pressure + 0.5 * gravity * 1000.0 * plant.intake_depth
+    )
+    return pump_pressure(
+        plant.riser,
+        plant.intake_depth,
+        water.temperature,
+        water.salinity,
+        free_gases(water, site, foot).gases,
+        plant.stages[0].pressure,
+        foot,
+        water.flow,
+        gravity=gravity,
+        laws=laws_of(site),
+    )
+
+
+def _check(plant: Plant, balance: Mapping[str, float]) -> None:
+    """Refuse a plant whose books do not close."""
+    for element, error in balance.items():
+        if not abs(error) <= BALANCE:
+            raise ComputationError(
+                f"plant {plant.name}: {element} in and out differ by {error:.1e} of it;"
+                f" {BALANCE:g} is allowed"
+            )
+
+
+def _warnings(
+    plant: Plant,
+    limed: LimedStream,
+    feed: WaterStream,
+    water: WaterStream,
+    holds: bool,
+    site: Site,
+) -> tuple[str, ...]:
+    """Return what a user should act on."""
+    found = []
+    if limed.overdosed:
+        found.append(
+            f"lime is over-dosed: {limed.lime / feed.flow:.1f} mol/m3 exceed the free CO2"
+            f" of the feed; the limed water has pH {limed.ph:.1f}"
+        )
+    scale = _calcite_saturation(water, site)
+    if scale > SCALING:
+        found.append(
+            f"return water is {10.0**scale:.0f} times saturated with calcite: it will scale"
+        )
+    if not holds:
+        found.append(
+            f"gas sent to the return does not stay dissolved at {plant.return_water.depth:g} m"
+        )
+    return tuple(found)
+
+
+def _calcite_saturation(water: WaterStream, site: Site) -> float:
+    """Return log10 of the saturation with calcite; -inf without calcium."""
+    if water.of("calcium") <= 0.0:
+        return float("-inf")
+    done = speciate(
+        water.temperature,
+        water.salinity,
+        water.of("DIC"),
+        water.of("alkalinity"),
+        site.air_pressure,
+        calcium=water.of("calcium"),
+    )
+    return float(done.calcite_saturation)
+
+
+def outlets(plant: Plant, operation: Operation) -> tuple[tuple[Return, WaterStream], ...]:
+    """Return every outlet and its water; wash water without an outlet is mixed in."""
+    if operation.wash_returned is None:
+        return ((plant.return_water, operation.returned),)
+    if plant.return_wash is None:
+        both = joined_water([operation.returned, operation.wash_returned])
+        return ((plant.return_water, both),)
+    return (
+        (plant.return_water, operation.returned),
+        (plant.return_wash, operation.wash_returned),
+    )

@@ -1,0 +1,345 @@
+r"""The pipe from the intake to the first separator, where gas comes out and lifts the water.
+
+Steady drift-flux flow (Zuber & Findlay 1965): water and the gas that has come out of it so
+far, at equilibrium with each other at every pressure, share the pipe with
+
+.. math:: \alpha = \frac{j_g}{C_0 (j_g + j_l) + v_{gj}}, \qquad C_0 = 1.2, \qquad
+          v_{gj} = 1.53 \left(\frac{\sigma g}{\rho_l}\right)^{1/4}
+
+Everything in the pipe is then a function of the pressure P alone, and the height at which a
+pressure is reached is one integral
+
+.. math:: z(P) = \int_P^{P_0} \frac{1 + dG/dP'}{\rho_m g + f \rho_l j_l j / 2D}\, dP', \qquad
+          G = \frac{\rho_l j_l^2}{1 - \alpha} + \frac{\rho_g j_g^2}{\alpha}
+
+with G the flux of momentum, f by Haaland (1983).  Where 1 + dG/dP falls to nil the flow is
+choked: with that flow no lower pressure and no greater height can be reached.  The self-lifted
+flow is the largest that just reaches the separator.  The pipe is all at one temperature.
+"""
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.optimize import brentq
+
+from strata.constants import GAS_CONSTANT, WATER_MASS, ZERO_CELSIUS
+from strata.errors import ComputationError
+from strata.gas import Laws, bubble_point, compressibility_factor, flash
+from strata.plant.plan import Riser
+from strata.species import SPECIES, VAPOUR
+from strata.water.density import density
+from strata.water.transport import dynamic_viscosity
+
+Array = NDArray[np.float64]
+
+DISTRIBUTION = 1.2  # C0 of Zuber & Findlay 1965 for round pipes
+DRIFT_FACTOR = 1.53  # of the rise velocity in churning flow, same source
+SURFACE_TENSION = 0.072  # N/m, water at 25 degC (IAPWS R1-76)
+ENTRY_LOSS = 0.5  # velocity heads lost where water enters a pipe with a sharp edge
+POINTS = 120  # pressures at which the pipe is looked at
+SLOWEST, FASTEST = 0.02, 30.0  # m/s of water at the foot, between which a flow is sought
+
+
+@dataclass(frozen=True)
+class RiserFlow:
+    """How water and gas go up the pipe."""
+
+    flow: float  # m3/s of water, all pipes
+    self_lifted: float  # m3/s that the gas lifts without a pump; 0 where it lifts none
+    pump_pressure: (
+        float  # Pa to be added at the foot for this flow; negative is throttled away
+    )
+    choked: bool  # whether the outflow is critical
+    outlet_pressure: float  # Pa
+    outlet_void: float  # share of the section that is gas
+    outlet_gas_share: float  # of the volume flow
+    bubble_pressure: float  # Pa
+    bubble_depth: float  # m, where gas first comes out; 0 where none does
+    startup_pressure: (
+        float  # Pa, to bring deep water up to where gas comes out, from a still pipe
+    )
+    depth: Array  # m, along the pipe
+    pressure: Array  # Pa
+    void: Array
+    water_velocity: Array  # m/s
+    gas_velocity: Array  # m/s
+
+
+@dataclass(frozen=True)
+class _Train:
+    """What comes out of the water as pressure falls, and the pipe it comes out in."""
+
+    pressure: Array  # falling, from where gas first comes out to that of the separator
+    gas_volume: Array  # m3 of gas per m3 of water
+    gas_density: Array
+    water_density: float
+    viscosity: float
+    gravity: float
+    bore: float
+    roughness: float
+    foot_pressure: float  # Pa in the lake at the intake
+    length: float
+
+
+def _friction_factor(speed: Array | float, train: _Train) -> Array:
+    """Return the Darcy friction factor of Haaland 1983, or that of laminar flow."""
+    reynolds = np.maximum(train.water_density * speed * train.bore / train.viscosity, 1.0)
+    rough = (train.roughness / train.bore / 3.7) ** 1.11
+    turbulent = (-1.8 * np.log10(rough + 6.9 / np.maximum(reynolds, 100.0))) ** -2.0
+    return np.where(reynolds < 2300.0, 64.0 / reynolds, turbulent)
+
+
+@dataclass(frozen=True)
+class _Course:
+    """The two-phase part of the pipe for one flow."""
+
+    height: Array  # m above where gas first comes out
+    void: Array
+    water_speed: Array
+    gas_speed: Array
+    end: int  # index of the lowest pressure that is reached
+    choked: bool
+
+
+def _course(speed: float, train: _Train) -> _Course:
+    """Follow the pressure down for one superficial velocity of the water [m/s]."""
+    gas = speed * train.gas_volume
+    both = speed + gas
+    drift = DRIFT_FACTOR * (SURFACE_TENSION * train.gravity / train.water_density) ** 0.25
+    void = gas / (DISTRIBUTION * both + drift)
+    momentum = train.water_density * speed**2 / (1.0 - void)
+    momentum = momentum + train.gas_density * gas * (DISTRIBUTION * both + drift)
+    weight = (void * train.gas_density + (1.0 - void) * train.water_density) * train.gravity
+    drag = (
+        _friction_factor(both, train) * train.water_density * speed * both / (2 * train.bore)
+    )
+    pressure = train.pressure
+    stretch = 1.0 + np.gradient(momentum, pressure)
+    choked = bool(np.any(stretch <= 0.0))
+    end = int(np.argmax(stretch <= 0.0)) if choked else len(pressure) - 1
+    slope = np.maximum(stretch, 0.0) / (weight + drag)
+    rise = 0.5 * (slope[1:] + slope[:-1]) * (pressure[:-1] - pressure[1:])
+    height = np.concatenate([[0.0], np.cumsum(rise)])
+    gas_speed = np.divide(gas, void, out=np.zeros_like(gas), where=void > 0.0)
+    return _Course(height, void, speed / (1.0 - void), gas_speed, end, choked)
+
+
+def _single_phase(speed: float, train: _Train) -> tuple[float, float]:
+    """Return pressure lost per metre of full water [Pa/m] and at the entry [Pa]."""
+    head = 0.5 * train.water_density * speed**2
+    drag = float(_friction_factor(speed, train)) * head / train.bore
+    return train.water_density * train.gravity + drag, (1.0 + ENTRY_LOSS) * head
+
+
+def _pump_pressure(speed: float, train: _Train) -> float:
+    """Return what must be added at the foot [Pa] to bring the flow to the separator."""
+    course = _course(speed, train)
+    per_metre, entry = _single_phase(speed, train)
+    below = train.length - course.height[course.end]
+    if below >= 0.0:
+        return train.pressure[0] + below * per_metre + entry - train.foot_pressure
+    # gas comes out below the intake already: only part of the course is in the pipe
+    within = np.interp(
+        train.length, course.height[: course.end + 1], train.pressure[: course.end + 1]
+    )
+    outlet = train.pressure[course.end]
+    return float(outlet - within) + entry
+
+
+def _self_lifted_speed(train: _Train) -> float:
+    """Return the largest velocity [m/s] that needs no pump; 0 where there is none."""
+    speeds = np.geomspace(SLOWEST, FASTEST, 60)
+    needs = np.array([_pump_pressure(speed, train) for speed in speeds])
+    free = np.flatnonzero(needs <= 0.0)
+    if free.size == 0:
+        return 0.0
+    last = int(free[-1])
+    if last == len(speeds) - 1:
+        raise ComputationError(
+            f"riser: more than {FASTEST:g} m/s of water lifted by its own gas"
+        )
+    return float(
+        brentq(_pump_pressure, speeds[last], speeds[last + 1], args=(train,), xtol=1e-6)
+    )
+
+
+def _train_of(
+    riser: Riser,
+    temperature: float,
+    salinity: float,
+    gases: Mapping[str, float],
+    outlet: float,
+    foot: float,
+    length: float,
+    gravity: float,
+    laws: Laws | None,
+) -> tuple[_Train, float]:
+    """Return what comes out below the bubble point, and the bubble pressure."""
+    bubble = float(bubble_point(temperature, salinity, gases, laws).pressure)
+    start = max(bubble, outlet * 1.0000001)
+    pressure = np.geomspace(start, outlet, POINTS)
+    parted = flash(temperature, salinity, gases, pressure, laws=laws)
+    released = {**parted.released, VAPOUR: parted.vapour}
+    moles = np.sum(list(released.values()), axis=0)
+    some = moles > 0.0
+    shares = {
+        gas: np.where(some, amount / np.where(some, moles, 1.0), 1.0 if gas == VAPOUR else 0.0)
+        for gas, amount in released.items()
+    }
+    factor = compressibility_factor(temperature, pressure, shares, laws)
+    mass = sum(
+        share * (WATER_MASS if gas == VAPOUR else SPECIES[gas].molar_mass)
+        for gas, share in shares.items()
+    )
+    molar_volume = factor * GAS_CONSTANT * (temperature + ZERO_CELSIUS) / pressure
+    water = float(density(temperature, salinity, outlet))
+    train = _Train(
+        pressure,
+        moles * molar_volume,
+        mass / molar_volume,
+        water,
+        float(dynamic_viscosity(temperature)),
+        gravity,
+        riser.bore,
+        riser.roughness,
+        foot,
+        length,
+    )
+    return train, bubble
+
+
+def lift(
+    riser: Riser,
+    depth: float,
+    temperature: float,
+    salinity: float,
+    gases: Mapping[str, float],
+    outlet_pressure: float,
+    foot_pressure: float,
+    flow: float | None = None,
+    *,
+    gravity: float = 9.81,
+    laws: Laws | None = None,
+) -> RiserFlow:
+    """Return how a riser works: by its own gas, or with a pump for a demanded flow.
+
+    Parameters
+    ----------
+    riser : Riser
+    depth : float
+        Of the intake [m].
+    temperature, salinity : float
+        Of the water, in situ [degC], [g kg-1].
+    gases : mapping
+        Dissolved gases [mol m-3], "CO2" being the free gas.
+    outlet_pressure : float
+        In the separator [Pa].
+    foot_pressure : float
+        In the lake at the intake [Pa].
+    flow : float, optional
+        Demanded of all pipes together [m3 s-1]; the self-lifted flow if not given.
+
+    Raises
+    ------
+    strata.ComputationError
+        If no flow is demanded and the gas lifts none.
+    """
+    length = depth + riser.separator_height
+    train, bubble = _train_of(
+        riser,
+        temperature,
+        salinity,
+        gases,
+        outlet_pressure,
+        foot_pressure,
+        length,
+        gravity,
+        laws,
+    )
+    section = riser.pipes * 0.25 * math.pi * riser.bore**2
+    own = _self_lifted_speed(train)
+    if flow is None and own == 0.0:
+        raise ComputationError(
+            f"riser: the gas of water from {depth:g} m lifts no flow up {length:g} m of pipe"
+        )
+    speed = own if flow is None else flow / section
+    course = _course(speed, train)
+    per_metre, _ = _single_phase(speed, train)
+    end = course.end
+    below = length - float(course.height[end])
+    gas = speed * train.gas_volume[end]
+    return RiserFlow(
+        flow=speed * section,
+        self_lifted=own * section,
+        pump_pressure=0.0 if flow is None else _pump_pressure(speed, train),
+        choked=course.choked,
+        outlet_pressure=float(train.pressure[end]),
+        outlet_void=float(course.void[end]),
+        outlet_gas_share=float(gas / (gas + speed)),
+        bubble_pressure=bubble,
+        bubble_depth=max(0.0, depth - max(below, 0.0)) if bubble > outlet_pressure else 0.0,
+        startup_pressure=_startup_pressure(train, bubble, temperature, salinity, gases),
+        depth=np.concatenate([[depth], depth - below - course.height[: end + 1]]),
+        pressure=np.concatenate(
+            [[train.pressure[0] + max(below, 0.0) * per_metre], train.pressure[: end + 1]]
+        ),
+        void=np.concatenate([[0.0], course.void[: end + 1]]),
+        water_velocity=np.concatenate([[speed], course.water_speed[: end + 1]]),
+        gas_velocity=np.concatenate([[0.0], course.gas_speed[: end + 1]]),
+    )
+
+
+def pump_pressure(
+    riser: Riser,
+    depth: float,
+    temperature: float,
+    salinity: float,
+    gases: Mapping[str, float],
+    outlet_pressure: float,
+    foot_pressure: float,
+    flow: float,
+    *,
+    gravity: float = 9.81,
+    laws: Laws | None = None,
+) -> float:
+    """Return what a pump must add [Pa] for a demanded flow; arguments as :func:`lift`.
+
+    Negative where the gas lifts more and the flow is throttled.
+    """
+    length = depth + riser.separator_height
+    train, _ = _train_of(
+        riser,
+        temperature,
+        salinity,
+        gases,
+        outlet_pressure,
+        foot_pressure,
+        length,
+        gravity,
+        laws,
+    )
+    return _pump_pressure(flow / (riser.pipes * 0.25 * math.pi * riser.bore**2), train)
+
+
+def _startup_pressure(
+    train: _Train,
+    bubble: float,
+    temperature: float,
+    salinity: float,
+    gases: Mapping[str, float],
+) -> float:
+    """Return what a pump must add to a still pipe [Pa] until gas comes out and helps.
+
+    The pipe is filled with deep water up to where its pressure is that of the first bubble,
+    and above that with water of the density without gas; nil where the lake's pressure lifts
+    that.
+    """
+    heavy = float(density(temperature, salinity, bubble, dict(gases)))
+    filled = min(
+        train.length, max(0.0, (train.foot_pressure - bubble) / (heavy * train.gravity))
+    )
+    column = heavy * filled + train.water_density * (train.length - filled)
+    return max(0.0, train.pressure[-1] + column * train.gravity - train.foot_pressure)

@@ -97,11 +97,11 @@ def write_guess(folder: Path, day: str) -> None:
         share = 0.5 * (1 + np.tanh((depth - foot) / 4.0))
         profile += share[:, None] * (table[upper + 1] - table[upper])
     write_ctd(folder / "ctd.csv", depth, profile[:, 0], profile[:, 1], day)
-    at = np.unique(np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 390])
+    at = np.unique(np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 396])
     samples = {
         name: np.interp(at, depth, profile[:, 2 + k]) for k, name in enumerate(GAS_COLUMNS)
     }
-    write_samples(folder / "samples.csv", at, samples, day)
+    write_samples(folder / "gas.csv", at, samples, day)
 
 
 def settle(column: Column, years: int, step_days: float) -> None:
@@ -139,7 +139,7 @@ def sample_depths(column: Column) -> np.ndarray:
     """Return depths for water samples: across every gradient, and between them."""
     z, stability = column.basin.faces[1:-1], column.seen.stability[1:-1]
     peaks, _ = find_peaks(stability, prominence=2e-6, distance=5)
-    wanted = [1.0, 20.0, 390.0]
+    wanted = [1.0, 20.0, 396.0]
     edges = []
     for peak in peaks:
         inside = np.flatnonzero(stability > 0.1 * stability[peak])
@@ -149,7 +149,7 @@ def sample_depths(column: Column) -> np.ndarray:
         wanted += [top - 2, z[peak] - 2, z[peak] + 2, foot + 2]
     edges = sorted([0.0, *edges, 400.0])
     wanted += [0.5 * (a + b) for a, b in zip(edges, edges[1:], strict=False) if b - a > 25]
-    depths = np.unique(np.round(np.clip(wanted, 1.0, 395.0)))
+    depths = np.unique(np.round(np.clip(wanted, 1.0, 396.0)))
     keep = [depths[0]]
     for depth in depths[1:]:
         if depth - keep[-1] >= 3:
@@ -180,7 +180,7 @@ def survey(column: Column, folder: Path, day: str) -> None:
         exact = at(where, true)
         noise = rng.normal(0, 1, len(where)) * np.maximum(share * exact, np.minimum(least, exact))
         taken[name] = np.maximum(exact + noise, 0.0)
-    write_samples(folder / "samples.csv", where, taken, day)
+    write_samples(folder / "gas.csv", where, taken, day)
 
 
 def main() -> None:

@@ -5,24 +5,25 @@ else the amount added.  The kernel withdraws the actual water and applies the he
 is produced is exactly what was withdrawn and added less what was returned.
 """
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
-from datetime import timedelta
+from datetime import date
 
 import numpy as np
 from numpy.typing import NDArray
 
-from strata import clock
 from strata.column import kernel
 from strata.column.column import Column
 from strata.column.streams import Give, Path, Source, Surroundings, follow
-from strata.column.tracers import SALINITY, TEMPERATURE, TRACERS, index
+from strata.column.tracers import METHANE, SALINITY, TEMPERATURE, TRACERS
 from strata.lake.site import Lake
 from strata.plant import timetable
-from strata.plant.intake import withdrawal_weights
-from strata.plant.operate import Operation, operate
-from strata.plant.plan import Plan, Plant, Return
-from strata.plant.streams import WaterStream
+from strata.plant.intake import plant_weights
+from strata.plant.operate import Operation, operate, outlets
+from strata.plant.plan import Intake, Plan, Plant, Return
+from strata.plant.power import heating_value
+from strata.plant.streams import CALCITE_DENSITY, WaterStream
+from strata.water.density import parcel_density
 
 Array = NDArray[np.float64]
 
@@ -30,10 +31,6 @@ Array = NDArray[np.float64]
 RETURN_TAG = "return_water"
 #: Tracers of which a share goes back; of the others an amount is added.
 _BY_SHARE = ("DIC", "CH4", "N2", "O2", "H2S")
-#: Density of calcite, to give suspended solids their volume [kg m-3] (common handbook value).
-CALCITE_DENSITY = 2710.0
-
-
 @dataclass(frozen=True)
 class Working:
     """What the plants do during a visit, as the column wants it."""
@@ -50,27 +47,276 @@ class _Running:
     plant: Plant
     feed: WaterStream
     operation: Operation
-    takes: tuple[int, ...]  # rows of its takes
-    paths: dict[str, Path]
-    excess: dict[str, float]  # density of each return above the lake at its outlet, kg m-3
+    takes: list[int]  # rows of its takes: the feed, then the wash water
+    gives: list[Give] = field(default_factory=list)
+    paths: list[Path] = field(default_factory=list)
+    excess: list[float] = field(default_factory=list)  # of each outlet over the lake, kg m-3
 
 
-@dataclass
 class Fleet:
-    """All plants of a plan; none for a lake left alone."""
+    """All plants of a plan, as the clock sees them; none for a lake left alone."""
 
-    plan: Plan | None
-    lake: Lake
-    running: list[_Running] = field(default_factory=list)
-    totals: dict[str, dict[str, float]] = field(default_factory=dict)
-    warnings: list[str] = field(default_factory=list)
+    def __init__(self, plan: Plan | None, lake: Lake) -> None:
+        self.lake = lake
+        self.plants = plan.plants if plan is not None else ()
+        self.tags = (RETURN_TAG,) if self.plants else ()
+        self.running: list[_Running] = []
+        self.totals = {
+            plant.name: {"recovered_CH4": 0.0, "vented_CH4_total": 0.0} for plant in self.plants
+        }
+        self.warnings: list[str] = []
 
-    @property
-    def plants(self) -> tuple[Plant, ...]:
-        """Return the plants of the plan."""
-        return self.plan.plants if self.plan is not None else ()
+    def dates(self, begin: date, end: date) -> list[date]:
+        """Return every day between two on which a plant changes load or settings."""
+        return [d for plant in self.plants for d in timetable.event_dates(plant, begin, end)]
 
-    @property
-    def tags(self) -> tuple[str, ...]:
-        """Return the tags that the plants need."""
-        return (RETURN_TAG,) if self.plants else ()
+    def work(self, column: Column, around: Surroundings, day: date) -> Working:
+        """Return what the plants take and give from a day on, found from the column as it is."""
+        self.running = []
+        takes: list[Array] = []
+        gives: list[Give] = []
+        for planned in self.plants:
+            load = timetable.load_factor(planned, day)
+            if load <= 0.0:
+                continue
+            plant = timetable.plant_on(planned, day)
+            draws = [_draw(column, plant.intakes, load * plant.flow)]
+            if plant.wash is not None:
+                intake = [Intake(plant.wash.water_depth, 1.0)]
+                draws.append(_draw(column, intake, load * plant.wash.water_flow))
+            feeds = [stream_of(draw, column) for draw in draws]
+            if not timetable.runs_on_feed(plant, feeds[0].of("CH4")):
+                continue
+            operation = operate(
+                plant, feeds[0], feeds[1] if len(feeds) > 1 else None, self.lake.site
+            )
+            rows = list(range(len(takes), len(takes) + len(draws)))
+            running = _Running(plant, feeds[0], operation, rows)
+            self._put_back(running, feeds, column, around)
+            takes += draws
+            gives += running.gives
+            self.running.append(running)
+            self._warn(plant.name, operation.warnings)
+        reference = [draw @ column.values / draw.sum() for draw in takes]
+        return Working(takes, gives, np.array(reference).reshape(len(takes), len(column.tracers)))
+
+    def _put_back(
+        self,
+        running: _Running,
+        feeds: list[WaterStream],
+        column: Column,
+        around: Surroundings,
+    ) -> None:
+        """Follow what each outlet of a plant puts back to where it ends."""
+        operation = running.operation
+        streams = [operation.returned]
+        if operation.wash_returned is not None:
+            streams.append(operation.wash_returned)
+        found = outlets(running.plant, operation)
+        for number, (where, water) in enumerate(found):
+            source = source_of(f"{running.plant.name}, outlet {number + 1}", water, where, column)
+            path = follow(source, around, self.lake.mixing.overshoot)
+            link: dict[int, Array] = {}
+            added = np.zeros(len(column.tracers))
+            parts = range(len(streams)) if len(found) == 1 else [number]
+            for part in parts:
+                link[running.takes[part]], more = factors(
+                    feeds[part], streams[part], column.tracers, by_share=part == 0
+                )
+                added += more
+            running.gives.append(
+                Give(kernel.RETURN, water.flow, added, path.given, path.entrained, link)
+            )
+            running.paths.append(path)
+            running.excess.append(excess_density(source, around))
+
+    def _warn(self, name: str, warnings: Sequence[str]) -> None:
+        """Keep each warning of a plant once."""
+        for warning in warnings:
+            line = f"{name}: {warning}"
+            if line not in self.warnings:
+                self.warnings.append(line)
+
+    def book(self, column: Column, seconds: float) -> None:
+        """Add the methane that left the lake during a visit to the totals of each plant."""
+        taken = column.state.taken
+        for running in self.running:
+            left = sum(taken[row, METHANE] for row in running.takes)
+            for give in running.gives:
+                left -= seconds * give.added[METHANE]
+                left -= sum(share[METHANE] * taken[row, METHANE] for row, share in give.link.items())
+            made = running.operation.product.of("CH4")
+            vented = running.operation.vented.of("CH4")
+            totals = self.totals[running.plant.name]
+            if made + vented > 0.0:
+                totals["recovered_CH4"] += left * made / (made + vented)
+                totals["vented_CH4_total"] += left * vented / (made + vented)
+
+    def series(self) -> dict[str, dict[str, float]]:
+        """Return what every plant does now, by the names of ``strata.variables``."""
+        found = {plant.name: dict(_IDLE) for plant in self.plants}
+        for running in self.running:
+            found[running.plant.name] = _series_of(running)
+        for name, totals in self.totals.items():
+            found[name] |= totals
+        return found
+
+
+def collect(notes: list[dict[str, dict[str, float]]]) -> dict[str, dict[str, Array]]:
+    """Return notes of :meth:`Fleet.series`, one a time, as arrays over time."""
+    return {
+        plant: {name: np.array([note[plant][name] for note in notes]) for name in series}
+        for plant, series in notes[0].items()
+    }
+
+
+#: Series of a plant that does not run: nothing flows, and ratios have no value.
+_IDLE = dict.fromkeys(
+    (
+        "flow",
+        "product_CH4",
+        "product_CO2",
+        "vented_CH4",
+        "vented_CO2",
+        "returned_CH4",
+        "lime",
+        "solids",
+        "electric_power",
+        "net_power",
+        "pump_power",
+        "compression_power",
+        "vacuum_power",
+    ),
+    0.0,
+) | dict.fromkeys(
+    (
+        "feed_CH4",
+        "recovery",
+        "product_purity",
+        "heating_value",
+        "return_density_excess",
+        "trap_depth",
+        "dilution",
+        "upper_reach",
+    ),
+    np.nan,
+)
+
+
+def _series_of(running: _Running) -> dict[str, float]:
+    """Return the series of a plant at work."""
+    operation, feed, path = running.operation, running.feed, running.paths[0]
+    product, used = operation.product, operation.power
+    return {
+        "flow": feed.flow,
+        "feed_CH4": feed.of("CH4"),
+        "recovery": operation.recovery,
+        "product_CH4": product.of("CH4"),
+        "product_CO2": product.of("CO2"),
+        "product_purity": product.share("CH4") if product.dry > 0.0 else np.nan,
+        "heating_value": heating_value(product) if product.dry > 0.0 else np.nan,
+        "vented_CH4": operation.vented.of("CH4"),
+        "vented_CO2": operation.vented.of("CO2"),
+        "returned_CH4": operation.returned.flow * operation.returned.of("CH4"),
+        "lime": operation.lime,
+        "solids": operation.solids,
+        "electric_power": used["electric"],
+        "net_power": used["net"],
+        "pump_power": used["pump"],
+        "compression_power": used.get("compression", 0.0),
+        "vacuum_power": used.get("vacuum", 0.0),
+        "return_density_excess": running.excess[0],
+        "trap_depth": path.trap_depth,
+        "dilution": path.dilution,
+        "upper_reach": path.above_outlet,
+    }
+
+
+def _draw(column: Column, intakes: Iterable[Intake], flow: float) -> Array:
+    """Return what intakes draw from each layer [m3 s-1]."""
+    return flow * plant_weights(column.basin.faces, column.seen.stability[1:-1], intakes, flow)
+
+
+def stream_of(draw: Array, column: Column) -> WaterStream:
+    """Return water drawn from the layers [m3 s-1 each] as a stream."""
+    flow = float(draw.sum())
+    mean = draw @ column.values / flow
+    dissolved = {
+        name: float(mean[k])
+        for k, name in enumerate(TRACERS)
+        if k not in (TEMPERATURE, SALINITY)
+    }
+    return WaterStream(flow, float(mean[TEMPERATURE]), float(mean[SALINITY]), dissolved)
+
+
+def factors(
+    feed: WaterStream, back: WaterStream, tracers: Sequence[str], by_share: bool
+) -> tuple[Array, Array]:
+    """Return the share of each tracer of a feed that goes back, and the amount added per second.
+
+    A share for dissolved gases and DIC where ``by_share``, an amount on top of all for the rest.
+    Tags of return water are given anew; other tags go along with the water.
+    """
+    link, added = np.ones(len(tracers)), np.zeros(len(tracers))
+    for k, name in enumerate(tracers):
+        if name == RETURN_TAG:
+            link[k], added[k] = 0.0, back.flow
+        elif name in TRACERS:
+            before, after = _value(feed, name), _value(back, name)
+            if by_share and name in _BY_SHARE and before > 0.0:
+                link[k] = after / before
+            else:
+                added[k] = (after - before) * back.flow
+    return link, added
+
+
+def _value(stream: WaterStream, tracer: str) -> float:
+    """Return one tracer of a stream."""
+    if tracer in ("temperature", "salinity"):
+        return float(getattr(stream, tracer))
+    return stream.of(tracer)
+
+
+def source_of(name: str, water: WaterStream, where: Return, column: Column) -> Source:
+    """Return a stream at the mouth of its outlet; suspended calcite weighs it down."""
+    _, mass, volume = column.parcel(
+        water.temperature, water.salinity, water.dissolved, where.depth
+    )
+    return Source(
+        name=name,
+        depth=where.depth,
+        flow=water.flow,
+        temperature=water.temperature,
+        salinity=water.salinity,
+        gas_mass=mass + water.solids,
+        gas_volume=volume + water.solids / CALCITE_DENSITY,
+        ports=where.ports,
+        port_diameter=where.port_diameter,
+        port_spacing=where.port_spacing,
+        port_angle=where.port_angle,
+    )
+
+
+def excess_density(source: Source, around: Surroundings) -> float:
+    """Return how much heavier a source is than the lake at its outlet [kg m-3]."""
+    middle = around.basin.depth
+    pressure = float(np.interp(source.depth, middle, around.pressure))
+
+    def density(theta: float, salinity: float, mass: float, volume: float) -> float:
+        return float(
+            parcel_density(
+                theta, salinity, pressure, mass, volume, around.haline_contraction
+            )
+        )
+
+    lake = [
+        float(np.interp(source.depth, middle, profile))
+        for profile in (
+            around.temperature,
+            around.salinity,
+            around.gas_mass,
+            around.gas_volume,
+        )
+    ]
+    own = (source.temperature, source.salinity, source.gas_mass, source.gas_volume)
+    return density(*own) - density(*lake)

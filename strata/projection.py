@@ -12,7 +12,7 @@ from strata import clock, results
 from strata.column import kernel
 from strata.column.column import Column, Weather
 from strata.column.start import first_day
-from strata.coupling import Fleet
+from strata.coupling import Fleet, collect
 from strata.errors import ComputationError, OutOfRangeError
 from strata.lake.site import Climate, Lake
 from strata.plant.plan import Plan
@@ -71,7 +71,7 @@ def carry_on(
     while steps:
         column.refresh()
         around = column.surroundings()
-        working = fleet.work(column, around, span)
+        working = fleet.work(column, around, span.begin)
         gives = column.natural(around) + working.gives
         _, done = column.advance(
             weather, working.takes, gives, steps, dt, working.reference
@@ -131,7 +131,7 @@ def project(
     begin = lake.site.start
     end = clock.add_years(begin, years)
     track = _Track()
-    todo = clock.spans(begin, end, fleet.dates)
+    todo = clock.spans(begin, end, fleet.dates(begin, end))
     for number, span in enumerate(todo):
         try:
             if number == 0:
@@ -151,7 +151,7 @@ def project(
 def _first_note(track: _Track, column: Column, fleet: Fleet, span: clock.Span, begin: date) -> None:
     """Note the first day, with flows and diffusivities as the first visit finds them."""
     around = column.surroundings()
-    working = fleet.work(column, around, span)
+    working = fleet.work(column, around, span.begin)
     column.advance(
         weather_of(column.lake.climate, span.begin, begin),
         working.takes,
@@ -181,7 +181,7 @@ def _record(
         ledger_terms=("start", *kernel.LEDGER_TERMS),
         ledger=np.array(track.ledger),
         ledger_error=np.array(track.error),
-        plants=fleet.collect(track.plants),
+        plants=collect(track.plants),
         return_tags=fleet.tags,
         warnings=tuple(fleet.warnings),
         options=options,

@@ -4,7 +4,7 @@ The compiled loop of :mod:`strata.column.kernel` does the work; this holds its a
 what is held between visits of the clock, and words what the loop could not do.
 """
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -29,14 +29,18 @@ from strata.column.transport import face_weights
 from strata.compiled import broadcast
 from strata.errors import ComputationError
 from strata.gas import air
-from strata.gas.carbonate import carbonate_constants_of, free_co2
 from strata.gas.diffusivity import gas_diffusivity, schmidt_number
 from strata.lake.basin import Basin, build_basin
 from strata.lake.site import Lake, River, Spring
 from strata.species import SPECIES
-from strata.water import density as water_density
-from strata.water import transport as water_transport
+from strata.water.density import (
+    in_situ_temperature,
+    parcel_density,
+    potential_temperature,
+    thermal_expansion,
+)
 from strata.water.stability import standard_gravity
+from strata.water.transport import kinematic_viscosity, salt_diffusion, thermal_diffusivity
 
 Array = NDArray[np.float64]
 
@@ -99,7 +103,6 @@ class Column:
             taken=np.zeros((0, len(self.tracers))),
         )
         self.start = self.inventory()
-        self.turnover = np.zeros(len(self.tracers))
         count = self.basin.layers + 1
         self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
         self.refresh()
@@ -143,7 +146,7 @@ class Column:
         for _ in range(3):
             constants = self._carbonate_constants(values, pressure)
             mass, space = self._gas_load(values, constants)
-            rho = broadcast(water_density.parcel_density)(
+            rho = broadcast(parcel_density)(
                 values[:, TEMPERATURE],
                 values[:, SALINITY],
                 pressure,
@@ -159,16 +162,12 @@ class Column:
 
     def _carbonate_constants(self, values: Array, pressure: Array) -> Array:
         """Return (n, 3) conditional constants of the carbonate system of the layers."""
-        in_situ = broadcast(water_density.in_situ_temperature)(values[:, TEMPERATURE], pressure)
         site = self.lake.site
-        return carbonate_constants_of(
-            in_situ,
-            values[:, SALINITY],
-            values[:, ALKALINITY],
-            pressure,
-            site.magnesium_share,
-            site.calcium_share,
+        constants = np.empty((len(values), 3))
+        kernel.carbonate_rows(
+            values, pressure, site.magnesium_share, site.calcium_share, constants
         )
+        return constants
 
     def _gas_load(self, values: Array, constants: Array) -> tuple[Array, Array]:
         """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases."""
@@ -233,14 +232,19 @@ class Column:
         """Work out again what is held between visits of the clock."""
         values = self.values
         self.constants = self._carbonate_constants(values, self.pressure)
+        mass, space = self.gas_load()
+        grid = self.grid
+        kernel.pair_stability(
+            values, mass, space, grid.pressure, grid.distance, grid.physics, self.seen.stability
+        )
         face_theta = np.empty(self.basin.layers + 1)
         face_theta[1:-1] = 0.5 * (values[1:, TEMPERATURE] + values[:-1, TEMPERATURE])
         face_theta[0], face_theta[-1] = values[0, TEMPERATURE], values[-1, TEMPERATURE]
-        in_situ = broadcast(water_density.in_situ_temperature)(face_theta, self.face_pressure)
+        in_situ = broadcast(in_situ_temperature)(face_theta, self.face_pressure)
         salinity = np.interp(self.basin.faces, self.basin.depth, values[:, SALINITY])
-        self.expansion = water_density.thermal_expansion(in_situ, salinity, self.face_pressure)
-        self.heat = water_transport.thermal_diffusivity(in_situ)
-        self.viscosity = water_transport.kinematic_viscosity(in_situ)
+        self.expansion = thermal_expansion(in_situ, salinity, self.face_pressure)
+        self.heat = thermal_diffusivity(in_situ)
+        self.viscosity = kinematic_viscosity(in_situ)
         self.molecular = self._molecular(in_situ)
 
     def _molecular(self, in_situ: Array) -> Array:
@@ -248,7 +252,7 @@ class Column:
 
         DIC moves as free CO2 and bicarbonate, by their shares; ions, phosphate and tags as salt.
         """
-        salt = water_transport.salt_diffusion(in_situ)
+        salt = salt_diffusion(in_situ)
         molecular = np.repeat(salt[:, None], len(self.tracers), axis=1)
         molecular[:, TEMPERATURE] = self.heat
         for column, gas in AT_SURFACE.items():
@@ -260,7 +264,8 @@ class Column:
 
     def free_co2(self) -> Array:
         """Return free CO2 of the layers [mol m-3]."""
-        co2, _ = carbonate_pair(self.values, self.constants, self.hydrogen)
+        co2 = np.empty(self.basin.layers)
+        kernel.free_co2_rows(self.values, self.constants, self.hydrogen, co2)
         return co2
 
     def gas_load(self) -> tuple[Array, Array]:
@@ -281,28 +286,23 @@ class Column:
             gravity=self.gravity,
         )
 
-    def parcel(self, temperature: float, salinity: float, dissolved, depth: float):
-        """Return potential temperature, gas mass and gas volume of water at a depth.
+    def pressure_at(self, depth: float) -> float:
+        """Return absolute pressure at a depth [Pa]."""
+        return float(np.interp(depth, self.basin.faces, self.face_pressure))
 
-        ``temperature`` is in situ; ``dissolved`` maps tracer names to mol m-3.
+    def parcel(
+        self, temperature: float, salinity: float, dissolved: Mapping[str, float], depth: float
+    ) -> tuple[Array, float, float]:
+        """Return the tracers, gas mass [kg m-3] and gas volume [m3 m-3] of water at a depth.
+
+        ``temperature`` is potential; ``dissolved`` maps tracer names to mol m-3.
         """
-        pressure = float(np.interp(depth, self.basin.faces, self.face_pressure))
-        theta = float(
-            broadcast(water_density.potential_temperature)(temperature, pressure)
-        )
+        pressure = self.pressure_at(depth)
         row = np.zeros((1, len(self.tracers)))
-        row[0, TEMPERATURE], row[0, SALINITY] = theta, salinity
+        row[0, TEMPERATURE], row[0, SALINITY] = temperature, salinity
         for name, amount in dissolved.items():
             row[0, index(name)] = amount
-        site = self.lake.site
-        constants = carbonate_constants_of(
-            np.array([temperature]),
-            row[:, SALINITY],
-            row[:, ALKALINITY],
-            np.array([pressure]),
-            site.magnesium_share,
-            site.calcium_share,
-        )
+        constants = self._carbonate_constants(row, np.array([pressure]))
         mass, space = np.empty(1), np.empty(1)
         kernel.gas_load(
             row, constants, np.full(1, 1e-4), self.molar_mass, self.molar_volume, mass, space
@@ -311,8 +311,9 @@ class Column:
 
     def spring(self, spring: Spring, around: Surroundings) -> Give:
         """Return a spring as the kernel holds it: a plume from its outlet, or over its interval."""
+        theta = potential_temperature(spring.temperature, self.pressure_at(spring.depth))
         row, mass, space = self.parcel(
-            spring.temperature, spring.salinity, spring.dissolved, spring.depth
+            theta, spring.salinity, spring.dissolved, spring.depth
         )
         if f"spring_{spring.name}" in self.tags:
             row[index(f"spring_{spring.name}", self.tags)] = 1.0
@@ -418,8 +419,7 @@ class Column:
         stacked = stack(takes, gives, self.basin.layers, count)
         if reference is None:
             reference = np.full((len(takes), count), np.nan)
-        if len(self.state.taken) != len(takes):
-            self.state = self.state._replace(taken=np.zeros((len(takes), count)))
+        self.state = self.state._replace(taken=np.zeros((len(takes), count)))
         mixing = self.lake.mixing
         held = kernel.Held(
             constants=self.constants,
@@ -458,11 +458,3 @@ class Column:
                 " than it can give"
             )
         return code == kernel.FEED_CHANGED, int(done)
-
-
-def carbonate_pair(values: Array, constants: Array, hydrogen: Array) -> tuple[Array, Array]:
-    """Return free CO2 and hydrogen ions of rows of tracers [mol m-3]."""
-    co2, ions = np.empty(len(values)), np.empty(len(values))
-    for i, row in enumerate(values):
-        co2[i], ions[i] = free_co2(row[DIC], row[ALKALINITY], *constants[i], hydrogen[i])
-    return co2, ions

@@ -24,12 +24,15 @@ from strata.column.tracers import (
     METHANE,
     NITROGEN,
     OXYGEN,
+    SALINITY,
     SULFIDE,
     TEMPERATURE,
 )
 from strata.column.transport import advect, diffuse
 from strata.compiled import compiled
-from strata.gas.carbonate import free_co2
+from strata.gas.carbonate import carbonate_constants, free_co2
+from strata.gas.ions import ionic_strength_of
+from strata.water.density import in_situ_temperature
 
 Array = NDArray[np.float64]
 
@@ -102,7 +105,7 @@ class State(NamedTuple):
     hydrogen: Array  # (n,) last concentration of hydrogen ions, mol/m3
     mixed_depth: Array  # (1,) m
     books: Array  # (terms, m) running sums since the start
-    taken: Array  # (j, m) running sums of what each take took
+    taken: Array  # (j, m) what each take took in this visit
 
 
 class Seen(NamedTuple):
@@ -111,6 +114,33 @@ class Seen(NamedTuple):
     flow: Array  # (n + 1,) upward, m3/s
     diffusivity: Array  # (n + 1,) of solutes, m2/s
     stability: Array  # (n + 1,) buoyancy frequency squared, s-2
+
+
+@compiled
+def carbonate_rows(values, pressure, magnesium_share, calcium_share, constants):
+    """Fill k1, k2 and kw of the carbonate system of every layer, (n, 3)."""
+    for i in range(values.shape[0]):
+        strength = ionic_strength_of(
+            values[i, SALINITY], values[i, ALKALINITY], magnesium_share, calcium_share
+        )
+        in_situ = in_situ_temperature(values[i, TEMPERATURE], pressure[i])
+        constants[i, 0], constants[i, 1], constants[i, 2] = carbonate_constants(
+            in_situ, strength, pressure[i]
+        )
+
+
+@compiled
+def free_co2_rows(values, constants, hydrogen, co2):
+    """Fill free CO2 of every layer [mol m-3], refreshing the hydrogen ions."""
+    for i in range(values.shape[0]):
+        co2[i], hydrogen[i] = free_co2(
+            values[i, DIC],
+            values[i, ALKALINITY],
+            constants[i, 0],
+            constants[i, 1],
+            constants[i, 2],
+            hydrogen[i],
+        )
 
 
 @compiled

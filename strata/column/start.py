@@ -20,7 +20,7 @@ from strata.column.tracers import (
 )
 from strata.compiled import broadcast
 from strata.gas import air
-from strata.gas.carbonate import dic_from
+from strata.gas.speciation import alkalinity_of, dic_of
 from strata.lake.basin import build_basin
 from strata.lake.casts import layer_means
 from strata.lake.site import Lake, Site
@@ -79,13 +79,15 @@ def state_of(measured: Mapping[str, Array], depth: Array, site: Site) -> Array:
         values[:, NITROGEN] = measured["N2"]
     else:
         values[:, NITROGEN] = air.equilibrium("N2", in_situ, salinity, site.air_pressure)
-    carbon = ("DIC", "CO2", "alkalinity", "pH")
-    values[:, DIC], values[:, ALKALINITY] = dic_from(
-        in_situ,
-        salinity,
-        {name: measured[name] for name in carbon if name in measured},
-        pressure,
-        site.magnesium_share,
-        site.calcium_share,
-    )
+    if "alkalinity" not in measured:
+        values[:, ALKALINITY] = alkalinity_of(
+            in_situ, salinity, measured["DIC"], ph=measured["pH"], pressure=pressure
+        )
+    if "DIC" in measured:
+        values[:, DIC] = measured["DIC"]
+    else:
+        known = {name.lower(): measured[name] for name in ("CO2", "pH") if name in measured}
+        values[:, DIC] = dic_of(
+            in_situ, salinity, measured["alkalinity"], pressure=pressure, **known
+        )
     return values

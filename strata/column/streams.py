@@ -5,6 +5,7 @@ a plume, and the layers it ends in.  Takes and gives of a visit are stacked into
 kernel here.
 """
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
@@ -47,6 +48,7 @@ class Source:
     ports: int = 1
     port_diameter: float = 0.5  # m
     port_spacing: float = 10.0  # m
+    port_angle: float = 0.0  # degrees upward
 
 
 @dataclass(frozen=True)
@@ -59,6 +61,7 @@ class Path:
     end_depth: float  # m, the furthest it reached
     dilution: float
     reached: str  # "", "surface" or "floor"
+    above_outlet: float  # share of the source that ends above its outlet
 
 
 @dataclass(frozen=True)
@@ -100,12 +103,14 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
         source.port_diameter,
         source.port_spacing,
         overshoot,
+        math.radians(source.port_angle),
     )
     if code < 0:
         raise ComputationError(
             f"the plume of {source.name} from {source.depth:g} m could not be followed (code {code})"
         )
-    return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code])
+    above = float(given[around.basin.depth < source.depth].sum())
+    return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code], above)
 
 
 def spread_evenly(spring: Spring, basin: Basin) -> Array:

@@ -17,12 +17,6 @@ from strata.lake.site import Hypsography
 Array = NDArray[np.float64]
 
 
-def gravity_at(latitude: float) -> float:
-    """Return gravity [m s-2] at a latitude [degrees] (GRS 1980, Moritz 2000)."""
-    s2 = np.sin(np.radians(latitude)) ** 2
-    return float(9.7803267715 * (1 + 0.0052790414 * s2 + 0.0000232718 * s2**2))
-
-
 @dataclass(frozen=True)
 class Basin:
     """Layers of a lake, from the surface down.

@@ -37,7 +37,8 @@ def time_of_step(lake, plan, years: int = 5) -> tuple[float, int, int]:
     first = first_day(lake)
     column = Column(lake, np.pad(first, ((0, 0), (0, len(fleet.tags)))), fleet.tags)
     begin = lake.site.start
-    todo = clock.spans(begin, clock.add_years(begin, years + 1), fleet.dates)
+    end = clock.add_years(begin, years + 1)
+    todo = clock.spans(begin, end, fleet.dates(begin, end))
     warm = [span for span in todo if span.end <= clock.add_years(begin, 1)]
     for span in warm:
         carry_on(column, fleet, span, begin, 1.0)

@@ -112,14 +112,14 @@ def write_casts(folder: Path) -> None:
     z = np.arange(0.0, 401.0, 2.0)
     temperature = 23.4 - 0.8 * step(z, 62, 6) + 2.1 * step(z, 205, 5) + 0.9 * step(z, 290, 6)
     salinity = (
-        1.2 + 0.5 * step(z, 62, 6) + 0.3 * step(z, 95, 6)
+        1.2 + 2e-4 * z + 0.5 * step(z, 62, 6) + 0.3 * step(z, 95, 6)
         + 2.0 * step(z, 205, 5) + 1.6 * step(z, 290, 6)
     )  # fmt: skip
     rows = [f"{a:g},{b:.4f},{c:.4f}" for a, b, c in zip(z, temperature, salinity, strict=True)]
     head = "# CTD of the test lake\ndepth_m,temperature_degC,salinity_g_kg"
     (folder / "ctd.csv").write_text("\n".join([head, *rows]) + "\n")
-    z = np.array([0, 20, 40, 60, 80, 100, 130, 160, 190, 200, 210, 220, 250, 280, 290, 300, 320,
-                  350, 380, 398.0])  # fmt: skip
+    z = np.array([0, 20, 40, 60, 80, 100, 130, 160, 190, 200, 210, 220, 250, 280, 290, 300])
+    z = np.append(z, [320, 350, 380, 398.0])
     columns = {
         "CH4_mol_m3": 2 * step(z, 95, 10) + 8 * step(z, 205, 6) + 6 * step(z, 290, 8),
         "DIC_mol_m3": 15 + 9 * step(z, 95, 10) + 70 * step(z, 205, 6) + 55 * step(z, 290, 8),

@@ -6,6 +6,7 @@ import pytest
 
 from strata.errors import InputError
 from strata.inputs import load_plan
+from strata.plant.timetable import plant_on
 
 WASH = """
 [plant.wash]
@@ -87,8 +88,8 @@ def test_lime_wash_and_timetable_arrive(folder):
         (
             "start = 2028-01-01",
             "start = 2026-01-01",
-            "plan.toml: plant.north.start is 2026-01-01; the casts stand for 2027-01-01, a plant "
-            "starts later",
+            "plan.toml: plant.north.start is 2026-01-01; 2027-01-01, the date of the casts, or "
+            "later is required",
         ),
         (
             "ports = 100",
@@ -154,6 +155,125 @@ def test_all_mistakes_of_a_plan_come_at_once(folder, sound_lake):
         "plan.toml: plant.north.stop is 2028-01-01; a date after start (2028-01-01) is required",
         "plan.toml: plant.north.intake_depth_m is 430; the lake floor is at 400 m",
     ]
+
+
+RICH = """
+[plant.lime]
+target_co2_mol_m3 = 5
+
+[plant.riser]
+bore_m = 0.8
+pipes = 4
+roughness_mm = 0.1
+
+[plant.delivery]
+product_pressure_bar = 8
+auxiliary_power_kW = 250
+
+[[plant.intake]]
+depth_m = 320
+share = 0.25
+
+[[plant.outage]]
+part = "lime"
+start = 2031-01-01
+stop = 2031-03-01
+
+[[plant.change]]
+start = 2035-01-01
+flow_m3_s = 4.0
+return.depth_m = 260
+stage.1.pressure_bar = 1.5
+"""
+
+
+def test_everything_a_plant_may_have_arrives_in_si(folder, sound_lake):
+    folder.plan.write_text(folder.plan.read_text() + RICH)
+    (plant,) = load_plan(folder.plan, sound_lake).plants
+    assert (plant.lime.dose, plant.lime.target_co2) == (None, 5)
+    assert (plant.riser.bore, plant.riser.pipes) == (0.8, 4)
+    assert plant.riser.roughness == pytest.approx(1e-4)
+    assert plant.delivery.product_pressure == pytest.approx(8e5)
+    assert plant.delivery.auxiliary_power == pytest.approx(250e3)
+    assert [(i.depth, i.share) for i in plant.intakes] == [(345, 0.75), (320, 0.25)]
+    assert (plant.outages[0].part, plant.outages[0].stop) == ("lime", date(2031, 3, 1))
+
+
+def test_a_dated_change_sets_attributes_of_the_plant_in_si(folder, sound_lake):
+    folder.plan.write_text(folder.plan.read_text() + RICH)
+    (plant,) = load_plan(folder.plan, sound_lake).plants
+    (change,) = plant.changes
+    assert change.start == date(2035, 1, 1)
+    assert change.values == {
+        "flow": 4.0,
+        "return_water.depth": 260.0,
+        "stages.1.pressure": pytest.approx(1.5e5),
+    }
+    later = plant_on(plant, date(2036, 1, 1))
+    assert (later.flow, later.return_water.depth) == (4, 260)
+    assert later.stages[0].pressure == pytest.approx(1.5e5)
+    assert plant_on(plant, date(2034, 12, 31)).flow == 6
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        (
+            "return.depth_m = 260",
+            "return.depth_m = 430",
+            "plan.toml: plant.north.change.1.return.depth_m is 430; the lake floor is at 400 m",
+        ),
+        (
+            "return.depth_m = 260",
+            "return.depth = 260",
+            "plan.toml: plant.north.change.1.return.depth has no unit; write depth_m",
+        ),
+        (
+            "stage.1.pressure_bar = 1.5",
+            "stage.2.pressure_bar = 1.5",
+            "plan.toml: plant.north.change.1.stage.2.pressure_bar is not there; known are 1",
+        ),
+        (
+            "flow_m3_s = 4.0",
+            "stop = 2040-01-01",
+            "plan.toml: plant.north.change.1.stop cannot be changed on a date",
+        ),
+        (
+            'part = "lime"',
+            'part = "stage 2"',
+            'plan.toml: plant.north.outage.1.part is "stage 2"; the parts of this plant are plant, '
+            "lime, stage 1",
+        ),
+        (
+            "share = 0.25",
+            "share = 1.0",
+            "plan.toml: plant.north.intake.share adds up to 1; less than 1 leaves some for "
+            "intake_depth_m",
+        ),
+        (
+            "target_co2_mol_m3 = 5",
+            "target_co2_mol_m3 = 5\ndose_mol_m3 = 50",
+            "plan.toml: plant.north.lime.target_co2_mol_m3 stands beside dose_mol_m3; give one of "
+            "them",
+        ),
+        (
+            "target_co2_mol_m3 = 5",
+            "settled_share = 0.9",
+            "plan.toml: plant.north.lime.dose_mol_m3 is missing; give dose_mol_m3 or "
+            "target_co2_mol_m3",
+        ),
+        (
+            "pressure_bar = 2.0",
+            "pressure_bar = 2.0\nresidence_time_s = 60",
+            "plan.toml: plant.north.stage.1.mass_transfer_per_s is missing; it belongs to "
+            "residence_time_s",
+        ),
+    ],
+)
+def test_a_mistake_in_a_rich_plant_gets_one_message(folder, sound_lake, old, new, message):
+    folder.plan.write_text(folder.plan.read_text() + RICH)
+    folder.spoil(folder.plan, old, new)
+    assert refusal(folder, sound_lake) == [message]
 
 
 def test_names_of_plants_must_differ(folder):

@@ -60,7 +60,7 @@ class Commands(click.Group):
 )
 @click.version_option(__version__, prog_name="strata", message="%(prog)s %(version)s")
 def main() -> None:
-    r"""See what gas extraction does to a gas-rich stratified lake over decades.
+    """See what gas extraction does to a gas-rich stratified lake over decades.
 
     \b
     Example:

@@ -13,7 +13,7 @@ from strata.cli import options
 )
 @options.as_json
 def command(files: tuple[Path, ...], as_json: bool) -> None:
-    r"""Validate lake, plan and limits files without running anything.
+    """Validate lake, plan and limits files without running anything.
 
     Plans are held against the lake file among FILE, if there is one.  Every fault of every
     file is reported at once.

@@ -33,7 +33,7 @@ def command(
     strict: bool,
     as_json: bool,
 ) -> None:
-    r"""Hold every PLAN against the limits and against LAKE left alone.
+    """Hold every PLAN against the limits and against LAKE left alone.
 
     With -o, a dossier in HTML and one NetCDF file for each projection are written.
 

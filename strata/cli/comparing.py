@@ -46,7 +46,7 @@ def run(
         )
     for name, path in files.items():
         results.write(found.results[name], path)
-    if out:
+    if out and rules is not None:
         words = ["strata", "compare", str(lake), *map(str, plans), "--limits", str(limits)]
         words += ["--years", f"{years:g}", "--step-days", f"{step_days:g}", "-o", str(out)]
         dossier(
@@ -54,7 +54,8 @@ def run(
             found.verdicts,
             rules,
             out / DOSSIER,
-            baseline=NO_PLAN,
+            lake=site,
+            plans={plan.name: plan for plan in operators},
             command=shlex.join(words),
         )
     if as_json:

@@ -15,7 +15,7 @@ from strata.cli import options
 @options.step_days
 @options.as_json
 def command(folder: Path, years: float, step_days: float, as_json: bool) -> None:
-    r"""Write the demo lake and its plans to DIR (strata-demo), compare them, make a dossier.
+    """Write the demo lake and its plans to DIR (strata-demo), compare them, make a dossier.
 
     The lake, its plans and its limits are invented.  Input files that you have changed in DIR
     stay as they are and are used.

@@ -12,7 +12,7 @@ from strata.cli import options
 @click.option("-o", "--out", type=click.Path(path_type=Path), help="NetCDF file to write.")
 @options.as_json
 def command(lake: Path, out: Path | None, as_json: bool) -> None:
-    r"""Show the state of LAKE today: gas in place, saturation, stability, gradients.
+    """Show the state of LAKE today: gas in place, saturation, stability, gradients.
 
     \b
     Example:

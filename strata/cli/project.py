@@ -28,7 +28,7 @@ def command(
     strict: bool,
     as_json: bool,
 ) -> None:
-    r"""Project LAKE over decades under PLAN; without PLAN, the lake left alone.
+    """Project LAKE over decades under PLAN; without PLAN, the lake left alone.
 
     With --limits or --strict the projection is judged, for which the lake left alone is
     projected beside it.

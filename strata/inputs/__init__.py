@@ -196,7 +196,7 @@ def _rebuilt(texts: Texts, thing: T, lake: "Lake | None") -> T:
             rebuilt = build_limits(texts)
         case name:
             raise StrataError(f"with_values takes a lake, a plan or limits, not a {name}")
-    return rebuilt  # type: ignore[no-any-return]
+    return rebuilt
 
 
 def demo_files() -> Path:

@@ -22,7 +22,7 @@ _CONCENTRATION = ("mol_m3", "mmol_L", "mmol_m3", "umol_L")
 
 
 class Quantity(NamedTuple):
-    """What a column may hold: the units it may be given in, and its range in SI (conductivity in mS/cm)."""
+    """What a column may hold: its units, and its range in SI (conductivity in mS/cm)."""
 
     units: tuple[str, ...]
     range: Between
@@ -273,9 +273,8 @@ def _profile(
             Fault(file, f"column {name}", f"has {len(kept)} values; 3 or more are required")
         )
         return None
-    depth, value, error, rows = zip(*kept, strict=True)
-    profile = Profile(np.array(depth), np.array(value), np.array(error))
-    return profile, Origin(file, name, rows)
+    *parts, lines = zip(*kept, strict=True)
+    return Profile(*(np.array(part) for part in parts)), Origin(file, name, lines)
 
 
 def _errors(

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from strata.errors import Fault, InputError
 from strata.inputs import casts, checks, units
 from strata.inputs.schema import LakeFile, WaterTable
-from strata.inputs.tables import attributes, dotted, filled, show, validate
+from strata.inputs.tables import Place, attributes, dotted, filled, show, validate
 from strata.inputs.texts import Texts
 from strata.lake import site
 
@@ -162,7 +162,7 @@ def same_names(document: Mapping[str, Any], array: str) -> Iterator[tuple[str, s
 
 def _below_floor(sound: Mapping[str, Any], floor: float) -> Iterator[tuple[str, str]]:
     """Find depths that lie below the lake floor."""
-    places = [
+    places: list[tuple[Place, Any]] = [
         (("spring", number, key), item.get(key))
         for number, item in enumerate(sound.get("spring", []))
         for key in ("depth_m", "spread_m")
@@ -190,14 +190,16 @@ def _intervals(sound: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
         if top is not None and foot is not None and foot <= top:
             place = dotted(sound, ("spring", number, "spread_m"))
             yield place, f"is {top:g} to {foot:g}; the first depth must be the smaller"
-    tables = [(("bed", number), item) for number, item in enumerate(sound.get("bed", []))]
+    tables: list[tuple[Place, Any]] = [
+        (("bed", number), item) for number, item in enumerate(sound.get("bed", []))
+    ]
     zones = sound.get("grid", {}).get("zone", [])
-    tables += [(("grid", "zone", number), item) for number, item in enumerate(zones)]  # type: ignore[misc]
-    for place, item in tables:
+    tables += [(("grid", "zone", number), item) for number, item in enumerate(zones)]
+    for whole, item in tables:
         top, foot = item.get("top_m"), item.get("foot_m")
         if top is not None and foot is not None and foot <= top:
             yield (
-                dotted(sound, (*place, "foot_m")),
+                dotted(sound, (*whole, "foot_m")),
                 f"is {foot:g}; more than top_m ({top:g}) is required",
             )
     ends = sorted((z["top_m"], z["foot_m"]) for z in zones if {"top_m", "foot_m"} <= z.keys())
@@ -223,7 +225,7 @@ def _zones(grid: Mapping[str, Any]) -> list[tuple[float, float, float]]:
     """Return the sound zones of a grid as top, foot and thickness."""
     wanted = ("top_m", "foot_m", "layer_m")
     zones = [zone for zone in grid.get("zone", []) if all(key in zone for key in wanted)]
-    return [tuple(zone[key] for key in wanted) for zone in zones]  # type: ignore[misc]
+    return [tuple(zone[key] for key in wanted) for zone in zones]
 
 
 def layer_faces(

@@ -8,7 +8,7 @@ is ``None`` and is not passed on.  All pressures are absolute.
 from datetime import date
 from typing import Annotated, Literal
 
-from pydantic import Field
+from pydantic import ConfigDict, Field
 
 from strata.inputs.tables import Between, Table
 
@@ -206,13 +206,17 @@ class StageTable(Table):
 
     pressure_bar: Pressure
     approach_share: SomeShare | None = None
-    gas_to: Literal["product", "wash", "vent"] | None = None
+    residence_time_s: Annotated[float, Between(0, 1e5, above=True)] | None = None
+    mass_transfer_per_s: Annotated[float, Between(0, 100, above=True)] | None = None
+    carry_under_share: Share | None = None
+    gas_to: Literal["product", "wash", "vent", "return"] | None = None
 
 
 class LimeTable(Table):
-    """``[plant.lime]``: CO2 bound as calcite before the separator."""
+    """``[plant.lime]``: CO2 bound as calcite before the separator, by dose or to a target."""
 
-    dose_mol_m3: Annotated[float, Between(0, 300)]
+    dose_mol_m3: Annotated[float, Between(0, 300)] | None = None
+    target_co2_mol_m3: Annotated[float, Between(0, 300)] | None = None
     approach_share: Share | None = None
     settled_share: Share | None = None
 
@@ -224,6 +228,8 @@ class WashTable(Table):
     water_flow_m3_s: SomeFlow
     water_depth_m: Depth
     stages: Annotated[int, Between(1, 50)] | None = None
+    efficiency_share: SomeShare | None = None
+    towers: Annotated[int, Between(1, 10)] | None = None
 
 
 class ReturnTable(Table):
@@ -233,7 +239,51 @@ class ReturnTable(Table):
     ports: Annotated[int, Between(1, 100_000)] | None = None
     port_diameter_m: Annotated[float, Between(0.01, 10)] | None = None
     port_spacing_m: Annotated[float, Between(0.1, 1000)] | None = None
+    port_angle_deg: (
+        Annotated[float, Between(-90, 90, why="0 is level, -90 straight down")] | None
+    ) = None
     temperature_change_K: Annotated[float, Between(-10, 10)] | None = None
+
+
+class RiserTable(Table):
+    """``[plant.riser]``: the pipes from the intake to the first separator."""
+
+    bore_m: Annotated[float, Between(0.02, 10)]
+    pipes: Annotated[int, Between(1, 1000)] | None = None
+    roughness_mm: Annotated[float, Between(0, 10)] | None = None
+    separator_height_m: Annotated[float, Between(-500, 100)] | None = None
+
+
+class DeliveryTable(Table):
+    """``[plant.delivery]``: what is done with the gas after the plant."""
+
+    product_pressure_bar: Pressure | None = None
+    compressor_stages: Annotated[int, Between(1, 20)] | None = None
+    cooling_temperature_degC: Annotated[float, Between(0, 100)] | None = None
+    auxiliary_power_kW: Annotated[float, Between(0, 1e6)] | None = None
+
+
+class IntakeTable(Table):
+    """``[[plant.intake]]``: one more depth that the plant draws from."""
+
+    depth_m: Depth
+    share: SomeShare
+
+
+class OutageTable(Table):
+    """``[[plant.outage]]``: a part out of order: "plant", "wash", "lime" or "stage 1"."""
+
+    part: Text
+    start: date
+    stop: date
+
+
+class ChangeTable(Table):
+    """``[[plant.change]]``: from ``start`` on, keys of the plant have these values instead."""
+
+    model_config = ConfigDict(extra="allow")
+
+    start: date
 
 
 class PlantTable(Table):
@@ -246,7 +296,9 @@ class PlantTable(Table):
     stop: date | None = None
     ramp_days: Annotated[float, Between(0, 3653)] | None = None
     availability_share: SomeShare | None = None
+    monthly_availability_share: _months(0, 1) | None = None  # type: ignore[valid-type]
     least_feed_methane_mol_m3: Annotated[float, Between(0, 100)] | None = None
+    pump_head_m: Annotated[float, Between(0, 500)] | None = None
     pump_efficiency_share: SomeShare | None = None
     compressor_efficiency_share: SomeShare | None = None
     electric_efficiency_share: Share | None = None
@@ -255,6 +307,11 @@ class PlantTable(Table):
     wash: WashTable | None = None
     return_water: ReturnTable = Field(alias="return")
     wash_return: ReturnTable | None = None
+    riser: RiserTable | None = None
+    delivery: DeliveryTable | None = None
+    intake: list[IntakeTable] = Field(default_factory=list)
+    outage: list[OutageTable] = Field(default_factory=list)
+    change: list[ChangeTable] = Field(default_factory=list)
 
 
 class PlanFile(Table):

@@ -122,7 +122,7 @@ def _inner(value: Any, token: str | int) -> Any:
 def keys(model: type[Table]) -> dict[str, Any]:
     """Return the keys of a table as its users write them, with their types."""
     return {
-        field.alias or name: Annotated[(field.annotation, *field.metadata)]  # type: ignore[index]
+        field.alias or name: Annotated[(field.annotation, *field.metadata)]
         if field.metadata
         else field.annotation
         for name, field in model.model_fields.items()

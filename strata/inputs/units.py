@@ -24,6 +24,7 @@ class Unit(NamedTuple):
 #: Ending of a key -> the unit.  Alkalinity counts in equivalents, which SI has no name for.
 UNITS = {
     "m": Unit(1.0, "m"),
+    "mm": Unit(1e-3, "mm"),
     "km2": Unit(1e6, "km2"),
     "deg": Unit(1.0, "deg"),
     "degC": Unit(1.0, "degC"),
@@ -31,6 +32,8 @@ UNITS = {
     "bar": Unit(1e5, "bar"),
     "m3_s": Unit(1.0, "m3/s"),
     "m_s": Unit(1.0, "m/s"),
+    "s": Unit(1.0, "s"),
+    "per_s": Unit(1.0, "per s"),
     "mm_day": Unit(1e-3 / _DAY, "mm/day"),
     "m2_s": Unit(1.0, "m2/s"),
     "m2_s2": Unit(1.0, "m2/s2"),
@@ -46,6 +49,7 @@ UNITS = {
     "mS_cm": Unit(1.0, "mS/cm"),
     "uS_cm": Unit(1e-3, "uS/cm"),
     "cm3_mol": Unit(1e-6, "cm3/mol"),
+    "kW": Unit(1e3, "kW"),
     "W_m2": Unit(1.0, "W/m2"),
     "W_m2_K": Unit(1.0, "W/m2/K"),
     "mol_m2_yr": Unit(1.0 / _YEAR, "mol/m2/yr"),

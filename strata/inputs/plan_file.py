@@ -113,7 +113,7 @@ def _paths(change: Mapping[str, Any], before: str = "") -> Iterator[tuple[str, A
 def _changed(
     written: Mapping[str, Any], change: Mapping[str, Any]
 ) -> tuple[dict[str, Any], list[tuple[str, str]]]:
-    """Return the table of a plant after a change, and paths of the change that lead nowhere."""
+    """Return the table of a plant after a change, and paths in it that lead nowhere."""
     changed: dict[str, Any] = _deep_copy(written)
     del changed["change"]
     faults = []

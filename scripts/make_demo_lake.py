@@ -27,6 +27,7 @@ from strata.compiled import broadcast
 from strata.coupling import Fleet
 from strata.projection import carry_on
 from strata.water.density import in_situ_temperature
+from strata.water.salinity import salinity_from_conductivity
 
 HERE = Path(__file__).parent.parent / "profiles"
 SEED = 20260101
@@ -51,18 +52,24 @@ SAMPLE_ERROR = {
     "H2S": (0.03, 0.001),
     "phosphate": (0.02, 0.00005),
 }
-TEMPERATURE_ERROR, SALINITY_ERROR = 0.002, 0.002  # degC, g/kg, one standard deviation
+TEMPERATURE_ERROR, CONDUCTIVITY_ERROR = 0.003, 0.003  # degC, mS/cm, as the lake file states
+FACTOR = 0.80  # g/kg per mS/cm at 25 degC, as the lake file states
 
 
-def write_ctd(path: Path, depth, temperature, salinity, day: str) -> None:
-    """Write a CTD cast."""
+def write_ctd(path: Path, depth, temperature, salinity, day: str, rng=None) -> None:
+    """Write a CTD cast, with the noise of the instrument where a generator is given."""
+    conductivity = salinity / salinity_from_conductivity(np.ones_like(depth), temperature, FACTOR)
+    if rng is not None:
+        temperature = temperature + rng.normal(0, TEMPERATURE_ERROR, len(depth))
+        conductivity = conductivity + rng.normal(0, CONDUCTIVITY_ERROR, len(depth))
     lines = [
         f"# Lake survey of {day}, invented: CTD lowered from the surface, averaged over 1 m",
         "# standard deviation of the instrument: see the lake file",
-        "depth_m,temperature_degC,salinity_g_kg",
+        "depth_m,temperature_degC,conductivity_mS_cm",
     ]
     lines += [
-        f"{z:g},{t:.4f},{s:.4f}" for z, t, s in zip(depth, temperature, salinity, strict=True)
+        f"{z:g},{t:.4f},{c:.4f}"
+        for z, t, c in zip(depth, temperature, conductivity, strict=True)
     ]
     path.write_text("\n".join(lines) + "\n")
 
@@ -169,9 +176,7 @@ def survey(column: Column, folder: Path, day: str) -> None:
 
     depth = np.arange(0.0, 400.0, 1.0)
     in_situ = broadcast(in_situ_temperature)(values[:, 0], column.pressure)
-    temperature = at(depth, in_situ) + rng.normal(0, TEMPERATURE_ERROR, len(depth))
-    salinity = at(depth, values[:, 1]) + rng.normal(0, SALINITY_ERROR, len(depth))
-    write_ctd(folder / "ctd.csv", depth, temperature, salinity, day)
+    write_ctd(folder / "ctd.csv", depth, at(depth, in_situ), at(depth, values[:, 1]), day, rng)
     where = sample_depths(column)
     taken = {}
     for name in GAS_COLUMNS:
@@ -197,7 +202,7 @@ def main() -> None:
         shutil.copy(HERE / "lake.toml", copy)
         for extra in HERE.glob("*.csv"):
             shutil.copy(extra, copy)
-        write_guess(copy, "2026-01-01")
+        write_guess(copy, "2027-01-01")
         lake = strata.load_lake(copy / "lake.toml")
     start = np.load(options.state) if options.state else None
     column = spin_up(lake, options.years, options.step_days, 0.005, start)

@@ -1,0 +1,122 @@
+"""The methane lake of the literature: density, stability, saturation and inventory as published.
+
+Sources: CTD data base of the lake (Doda, Schmid et al. 2024), mean of casts 2008-2022; gas of March
+2018 (Baerenbold et al. 2020, PLoS ONE 15(8):e0237836); hypsography recalled from memory, scaled to the
+published area, depth and volume (Schmid & Wuest 2012).
+"""
+
+from pathlib import Path
+
+import numpy as np
+import pytest
+from scipy.interpolate import PchipInterpolator
+
+import strata
+
+HERE = Path(__file__).parent
+AIR_PRESSURE = 0.86e5  # Pa at 1,462 m, standard atmosphere
+GRAVITY = 9.78  # m s-2 near the equator
+CO2_VOLUME = 31.5e-6  # m3/mol, the value of the lake's own data base
+
+
+def table(name):
+    """Return the columns of one table; blanks become NaN."""
+    lines = [line for line in (HERE / name).read_text().splitlines() if line[0] != "#"]
+    return np.genfromtxt(lines, delimiter=",", names=True)
+
+
+@pytest.fixture(scope="module")
+def lake():
+    """Return depth, temperature, salinity and gas of the lake at 1 m."""
+    ctd, gas = table("ch4_lake_ctd_points.csv"), table("ch4_lake_gas_2018.csv")
+    depth = np.arange(10.0, 451.0)
+    known = ~np.isnan(gas["CH4_mmol_L"])
+    return {
+        "depth": depth,
+        "temperature": np.interp(depth, ctd["depth_m"], ctd["temperature_C"]),
+        "salinity": np.interp(depth, ctd["depth_m"], ctd["salinity_g_kg"]),
+        "CH4": np.interp(depth, gas["depth_m"][known], gas["CH4_mmol_L"][known]),
+        "CO2": np.interp(depth, gas["depth_m"], gas["CO2_mmol_L"]),
+    }
+
+
+def density(lake):
+    """Return density without the effect of pressure."""
+    return strata.water.density(
+        lake["temperature"],
+        lake["salinity"],
+        101325.0,
+        {"CH4": lake["CH4"], "CO2": lake["CO2"]},
+        co2_molar_volume=CO2_VOLUME,
+    )
+
+
+@pytest.mark.parametrize(
+    ("depth", "published"),
+    [(10, 998.00), (100, 999.12), (240, 999.89), (270, 1001.15), (350, 1001.83), (450, 1001.96)],
+)
+def test_density_is_that_of_the_lakes_data_base(lake, depth, published):
+    # read off a plotted figure; gas between its depths to 5 %, 0.03 kg/m3 each
+    found = density(lake)[lake["depth"] == depth][0]
+    assert found == pytest.approx(published, abs=0.1)
+
+
+@pytest.mark.parametrize(
+    ("top", "foot", "published", "share"),
+    # s-2; the mean cast smears the main gradient by 1-2 m
+    [(250, 275, 4.5e-4, 0.15), (195, 240, 3.3e-5, 0.20)],
+)
+def test_stability_of_the_main_gradient_and_of_the_pool_above(lake, top, foot, published, share):
+    pressure = AIR_PRESSURE + 1000.0 * GRAVITY * lake["depth"]
+    squared, middle = strata.water.buoyancy_frequency_squared(
+        lake["depth"],
+        lake["temperature"],
+        lake["salinity"],
+        pressure,
+        {"CH4": lake["CH4"], "CO2": lake["CO2"]},
+        co2_molar_volume=CO2_VOLUME,
+        gravity=GRAVITY,
+    )
+    inside = (middle > top) & (middle < foot)
+    assert squared[inside].mean() == pytest.approx(published, rel=share)
+
+
+def gas_pressure(lake):
+    """Return total gas pressure with nitrogen and argon at equilibrium with the air."""
+    air = {
+        gas: strata.gas.air_equilibrium(gas, 24.0, 3.0, AIR_PRESSURE) for gas in ("N2", "Ar")
+    }
+    return strata.gas.bubble_point(
+        lake["temperature"],
+        lake["salinity"],
+        {"CH4": lake["CH4"], "CO2": lake["CO2"], **air},
+    )
+
+
+def test_the_largest_saturation_lies_where_and_as_high_as_published(lake):
+    # published 50-60 % at 275 m, maximum 55 %
+    found = gas_pressure(lake)
+    absolute = AIR_PRESSURE + 1000.0 * GRAVITY * lake["depth"]
+    below = lake["depth"] > 80
+    saturation = np.where(below, found.pressure / absolute, 0.0)
+    deepest = int(np.argmax(saturation))
+    assert 0.47 <= saturation[deepest] <= 0.60
+    assert 265 <= lake["depth"][deepest] <= 340
+    # methane is about 85 % of the gas pressure there, counted without nitrogen and vapour
+    share = found.composition["CH4"][deepest] / (
+        found.composition["CH4"][deepest] + found.composition["CO2"][deepest]
+    )
+    assert share == pytest.approx(0.84, abs=0.05)
+
+
+@pytest.mark.parametrize(("gas", "published"), [("CH4", 60.0), ("CO2", 300.0)])
+def test_the_inventory_is_that_of_the_literature(gas, published):
+    # about 60 and 300 km3 at 0 degC and 1 atm in several papers; hypsography good to 5 %
+    basin, sample = table("ch4_lake_hypsography.csv"), table("ch4_lake_gas_2018.csv")
+    area = PchipInterpolator(basin["depth_m"], basin["area_km2"] * 1e6)
+    value = sample[f"{gas}_mmol_L"]
+    known = ~np.isnan(value)
+    depth = np.arange(0.5, 485.0)
+    content = np.sum(area(depth) * np.interp(depth, sample["depth_m"][known], value[known]))
+    molar = 8.314462618 * 273.15 / 101325.0  # m3/mol
+    assert content * molar / 1e9 == pytest.approx(published, rel=0.10)

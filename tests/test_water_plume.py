@@ -32,15 +32,41 @@ class Lake:
         self.excess_at = excess
         self.same = np.ones(len(self.centres))
 
-    def follow(self, depth, flow, excess, ports=1.0, diameter=0.2, spacing=10.0, overshoot=0.0,
-               angle=0.0, alpha=ENTRAINMENT_COEFFICIENT):
+    def follow(
+        self,
+        depth,
+        flow,
+        excess,
+        ports=1.0,
+        diameter=0.2,
+        spacing=10.0,
+        overshoot=0.0,
+        angle=0.0,
+        alpha=ENTRAINMENT_COEFFICIENT,
+    ):
         """Return the plume of water with a density excess in kg/m3."""
         one = self.same
         return follow_plume(
-            self.faces, 20.0 * one, one, self.excess, 0.0 * one, 101325.0 * one, 0.75e-3,
+            self.faces,
+            20.0 * one,
+            one,
+            self.excess,
+            0.0 * one,
+            101325.0 * one,
+            0.75e-3,
             GRAVITY,
-            float(depth), float(flow), 20.0, 1.0, float(excess), 0.0, float(ports),
-            float(diameter), float(spacing), float(overshoot), float(angle), float(alpha),
+            float(depth),
+            float(flow),
+            20.0,
+            1.0,
+            float(excess),
+            0.0,
+            float(ports),
+            float(diameter),
+            float(spacing),
+            float(overshoot),
+            float(angle),
+            float(alpha),
         )
 
 
@@ -111,8 +137,12 @@ def test_dilution_in_linear_stratification_is_the_exact_integral(direction):
     flow, buoyancy, frequency = 2e-3, 1e-2, math.sqrt(SQUARE)
     integral = quad(lambda x: np.sin(x) ** 1.5, 0.0, math.pi)[0]
     largest = math.sqrt(
-        4 * ENTRAINMENT_COEFFICIENT * math.sqrt(math.pi) * (buoyancy / frequency) ** 1.5
-        * integral / frequency
+        4
+        * ENTRAINMENT_COEFFICIENT
+        * math.sqrt(math.pi)
+        * (buoyancy / frequency) ** 1.5
+        * integral
+        / frequency
     )
     excess = linear(200.0) + direction * buoyancy / flow * DENSITY / GRAVITY
     dilution = LINEAR.follow(200.0, flow, excess, diameter=0.05)[4]
@@ -135,8 +165,14 @@ def test_a_round_plume_in_uniform_water_follows_the_five_thirds_law():
     flow, buoyancy, alpha = 1e-3, 1e-2, ENTRAINMENT_COEFFICIENT
     excess = -buoyancy / flow * DENSITY / GRAVITY
     result = UNIFORM.follow(200.0, flow, excess, diameter=0.05)
-    exact = (1.2 * alpha * (0.9 * alpha) ** (1 / 3) * math.pi ** (2 / 3)
-             * buoyancy ** (1 / 3) * 200.0 ** (5 / 3))
+    exact = (
+        1.2
+        * alpha
+        * (0.9 * alpha) ** (1 / 3)
+        * math.pi ** (2 / 3)
+        * buoyancy ** (1 / 3)
+        * 200.0 ** (5 / 3)
+    )
     assert result[5] == 1
     assert result[4] * flow == pytest.approx(exact, rel=0.02)
 
@@ -164,8 +200,14 @@ def test_ports_far_apart_are_so_many_plumes():
 
 def test_a_plume_goes_through_a_step_that_is_weaker_than_it_is_and_stops_at_a_stronger_one():
     flow, buoyancy, alpha = 0.01, 2e-2, ENTRAINMENT_COEFFICIENT
-    carried = (1.2 * alpha * (0.9 * alpha) ** (1 / 3) * math.pi ** (2 / 3)
-               * buoyancy ** (1 / 3) * 60.0 ** (5 / 3))
+    carried = (
+        1.2
+        * alpha
+        * (0.9 * alpha) ** (1 / 3)
+        * math.pi ** (2 / 3)
+        * buoyancy ** (1 / 3)
+        * 60.0 ** (5 / 3)
+    )
     left = buoyancy / carried * DENSITY / GRAVITY  # kg/m3 lighter than the lower water, there
     faces = np.linspace(0.0, 300.0, 601)
     source = -buoyancy / flow * DENSITY / GRAVITY
@@ -227,13 +269,18 @@ def test_a_level_jet_changes_without_a_jump_as_its_buoyancy_passes_through_zero(
 
 
 def test_a_small_change_of_the_profile_changes_little():
-    faces = np.concatenate([np.arange(0, 150, 4.0), np.arange(150, 250, 0.5),
-                            np.arange(250, 401, 4.0)])
+    faces = np.concatenate(
+        [np.arange(0, 150, 4.0), np.arange(150, 250, 0.5), np.arange(250, 401, 4.0)]
+    )
     rng = np.random.default_rng(5)
 
     def shape(depth):
-        return (0.4 / (1 + np.exp((95 - depth) / 4)) + 0.9 / (1 + np.exp((205 - depth) / 3))
-                + 0.5 / (1 + np.exp((290 - depth) / 3)) + 2e-4 * depth)
+        return (
+            0.4 / (1 + np.exp((95 - depth) / 4))
+            + 0.9 / (1 + np.exp((205 - depth) / 3))
+            + 0.5 / (1 + np.exp((290 - depth) / 3))
+            + 2e-4 * depth
+        )
 
     base = Lake(faces, shape)
     for source in (0.2, 0.8, 1.3, 1.6, 2.2):
@@ -260,10 +307,16 @@ def test_the_plume_does_not_depend_on_the_layers(thickness):
 
 @settings(max_examples=150, deadline=None)
 @drawn(
-    depth=st.floats(0.0, 400.0), flow=st.floats(1e-4, 100.0), excess=st.floats(-20.0, 20.0),
-    ports=st.integers(1, 1000), diameter=st.floats(0.02, 3.0), spacing=st.floats(0.1, 100.0),
-    angle=st.floats(-math.pi / 2, math.pi / 2), overshoot=st.floats(0.0, 2.0),
-    level=st.floats(1.0, 399.0), size=st.floats(0.0, 5.0),
+    depth=st.floats(0.0, 400.0),
+    flow=st.floats(1e-4, 100.0),
+    excess=st.floats(-20.0, 20.0),
+    ports=st.integers(1, 1000),
+    diameter=st.floats(0.02, 3.0),
+    spacing=st.floats(0.1, 100.0),
+    angle=st.floats(-math.pi / 2, math.pi / 2),
+    overshoot=st.floats(0.0, 2.0),
+    level=st.floats(1.0, 399.0),
+    size=st.floats(0.0, 5.0),
 )
 def test_any_source_ends_and_keeps_its_water(
     depth, flow, excess, ports, diameter, spacing, angle, overshoot, level, size
@@ -306,8 +359,7 @@ def test_a_sink_in_nearly_neutral_water_ends_at_the_gradients_about_it():
 
 
 @settings(max_examples=100, deadline=None)
-@drawn(depth=st.floats(0.0, 100.0), flow=st.floats(0.0, 100.0),
-       seed=st.integers(0, 2**32 - 1))
+@drawn(depth=st.floats(0.0, 100.0), flow=st.floats(0.0, 100.0), seed=st.integers(0, 2**32 - 1))
 def test_shares_of_a_layer_sum_to_one_wherever_it_lies(depth, flow, seed):
     rng = np.random.default_rng(seed)
     faces = np.concatenate([[0.0], np.cumsum(rng.uniform(0.1, 5.0, 60))])

@@ -224,7 +224,9 @@ def _yearly(variable: str, result: xr.Dataset) -> Array:
 
 def _share(variable: str) -> Callable[..., Array]:
     def value(result: xr.Dataset, reference: xr.Dataset | None) -> Array:
-        return _yearly(variable, result) / _reference(variable, result, reference)
+        whole = _reference(variable, result, reference)
+        share = np.full_like(whole, np.nan)  # where there is nothing to compare with
+        return np.divide(_yearly(variable, result), whole, out=share, where=whole > 0.0)
 
     return value
 
@@ -304,7 +306,7 @@ QUANTITIES: Mapping[str, Quantity] = {
     "surface_saturation": Quantity(
         "1",
         "most",
-        "saturation with CH4, CO2 and H2S in the mixed layer",
+        "saturation with CH4, CO2 and H2S in the surface layer",
         _plain("surface_saturation"),
         _surface_saturation_error,
     ),
@@ -396,7 +398,7 @@ def _judge_one(
     distance = limit.bound - values if upward else values - limit.bound
     dates = result["time"].values.astype("datetime64[D]").astype(object)
     known = np.isfinite(distance)
-    if not known.any():  # no parcel of the lake can bubble however far it rises
+    if not known.any():  # no parcel can bubble however far it rises; nothing to compare with
         distance, uncertainty = np.full_like(distance, np.inf), np.zeros_like(distance)
         known = np.ones_like(known)
     passed = np.flatnonzero(known & (distance < 0.0))

@@ -11,8 +11,9 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from strata.compiled import broadcast
-from strata.constants import ATMOSPHERE, DRY_AIR, GAS_CONSTANT, ZERO_CELSIUS
-from strata.gas import bubble_point, henry_constant, speciate
+from strata.constants import ATMOSPHERE, GAS_CONSTANT, ZERO_CELSIUS
+from strata.gas import bubble_point, speciate
+from strata.gas.air import argon_of_nitrogen
 from strata.lake.site import Lake, Profile, Site
 from strata.species import SPECIES
 from strata.water import thermal_expansion
@@ -33,12 +34,6 @@ YEAR = np.timedelta64(365, "D")
 
 
 # What the water is --------------------------------------------------------------------------
-
-
-def argon_share(temperature: Array) -> Array:
-    """Return the moles of argon per mole of nitrogen in air-saturated water."""
-    share = DRY_AIR["Ar"] / DRY_AIR["N2"]
-    return share * henry_constant("N2", temperature) / henry_constant("Ar", temperature)
 
 
 def water(
@@ -69,7 +64,8 @@ def water(
     temperature = broadcast(in_situ_temperature)(potential, pressure)
     carbonate = speciate(temperature, salinity, dic, alkalinity, pressure)
     gases = {gas: values[..., tracers.index(gas)] for gas in ("CH4", "N2", "O2", "H2S")}
-    gases |= {"CO2": carbonate.co2, "Ar": argon_share(temperature) * gases["N2"]}
+    argon = argon_of_nitrogen(temperature, salinity, site.air_pressure)
+    gases |= {"CO2": carbonate.co2, "Ar": argon * gases["N2"]}
     mass, volume = gas_mass_and_volume(gases, site.co2_molar_volume)
 
     def density_at(level: ArrayLike) -> Array:
@@ -166,9 +162,9 @@ def lift_to_bubbling(
     return np.where(gas_pressure > surface, depth - meets - beyond, np.nan)
 
 
-def below(face_depth: Array, mixed_layer_depth: ArrayLike) -> NDArray[np.bool_]:
-    """Return which layers lie wholly below the mixed layer, shape (..., layers)."""
-    foot = np.asarray(mixed_layer_depth, dtype=np.float64)[..., np.newaxis]
+def below(face_depth: Array, level: ArrayLike) -> NDArray[np.bool_]:
+    """Return which layers lie wholly below a depth [m], shape (..., layers)."""
+    foot = np.asarray(level, dtype=np.float64)[..., np.newaxis]
     return np.asarray(face_depth[:-1] >= foot - 1e-6)
 
 
@@ -320,7 +316,9 @@ def of_the_year(
 def surface_layer_depth(time: NDArray[np.datetime64], mixed: Array) -> Array:
     """Return the deepest mixed layer of the year that ends at each time [m].
 
-    This is the layer that the seasons mix.
+    This is the layer that the seasons mix.  Its water stays saturated with air between one
+    mixing and the next, so extremes of all gases together are taken below it and not below the
+    momentary mixed layer, which can be a metre thick on a calm day.
     """
     return of_the_year(time, mixed, np.max)
 

@@ -8,7 +8,8 @@ final name, then renamed: no half files.
 import hashlib
 import os
 import re
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
+from contextlib import contextmanager, suppress
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -30,6 +31,9 @@ Array = NDArray[np.float64]
 
 ZONES = ("surface layer", "intermediate", "below main gradient")
 NO_PLAN = "lake left alone"
+
+#: In a file words may not bear the name of their dimension, as coordinates of a dataset do.
+_LABELS = {name: f"{name}_name" for name in ("zone", "tracer", "ledger_term", "plant")}
 
 #: Variable of the dataset for each tracer of the state; tags become ``tag_<name>``.
 _OF_TRACER = {
@@ -126,7 +130,10 @@ def dataset(record: Record, lake: Lake, plan: Plan | None = None) -> xr.Dataset:
     found |= _gradient(record, lake, found)
     found |= _amounts(record, found)
     found |= margins.cast_errors(lake, record.depth, record.volume, found)
-    found |= {"ledger": record.ledger, "ledger_error": record.ledger_error}
+    found |= {
+        "ledger": np.moveaxis(record.ledger, 0, -1),
+        "ledger_error": record.ledger_error.T,
+    }
     table = {
         name: (VARIABLES[name].dims, value, VARIABLES[name].attributes)
         for name, value in found.items()
@@ -160,10 +167,11 @@ def _profiles(record: Record, lake: Lake) -> dict[str, Array]:
 
 
 def _bubbling(record: Record, lake: Lake, found: Mapping[str, Array]) -> dict[str, Array]:
-    """Return the extremes below the mixed layer, and the reactive gases within it."""
+    """Return the extremes below the surface layer, and the gases but air within it."""
     depth, mixed = record.depth, record.mixed_layer_depth
-    deep = margins.below(record.face_depth, mixed)
-    series = {"mixed_layer_depth": mixed}
+    surface = margins.surface_layer_depth(record.time, mixed)
+    deep = margins.below(record.face_depth, surface)
+    series = {"mixed_layer_depth": mixed, "surface_layer_depth": surface}
     for name, source, pick in (
         ("largest_saturation", "saturation", margins.largest),
         ("least_pressure_margin", "pressure_margin", margins.least),
@@ -172,7 +180,6 @@ def _bubbling(record: Record, lake: Lake, found: Mapping[str, Array]) -> dict[st
         series[name], series[f"{name}_depth"] = pick(found[source], depth, deep)
     reactive = found["reactive_gas_pressure"] / record.pressure
     series["surface_saturation"] = margins.largest(reactive, depth, ~deep)[0]
-    series["surface_layer_depth"] = margins.surface_layer_depth(record.time, mixed)
     series["oxic_depth"] = margins.oxic_depth(depth, found["oxygen"])
     return series
 
@@ -209,7 +216,7 @@ def _amounts(record: Record, found: Mapping[str, Array]) -> dict[str, Array]:
     for gas in ("methane", "carbon_dioxide"):
         series[f"{gas}_in_place"] = margins.in_place(found[gas], volume)
         series[f"{gas}_in_zone"] = np.stack(
-            [margins.in_place(found[gas], volume, share) for share in shares], axis=-1
+            [margins.in_place(found[gas], volume, share) for share in shares]
         )
     for gas in ("methane", "phosphate"):
         series[f"{gas}_flux_up"] = margins.upward_flux(
@@ -247,7 +254,7 @@ def _plant_table(record: Record) -> dict[str, tuple[tuple[str, ...], Array, dict
     table = {}
     for series in sorted(set().union(*record.plants.values())):
         words = PLANT_SERIES[series]
-        stacked = np.stack([plant[series] for plant in record.plants.values()], axis=-1)
+        stacked = np.stack([plant[series] for plant in record.plants.values()])
         table[f"plant_{series}"] = (words.dims, stacked, words.attributes)
     return table
 
@@ -359,6 +366,29 @@ def _encoding(result: xr.Dataset) -> dict[str, dict[str, object]]:
     return encoding
 
 
+@contextmanager
+def replacing(path: str | os.PathLike[str]) -> Iterator[Path]:
+    """Give a name beside the final one to write to; rename it when all went well.
+
+    Raises
+    ------
+    strata.InputError
+        If the file cannot be written there; what was there before stays as it was.
+    """
+    path = Path(path)
+    partial = path.with_name(f".{path.name}.{os.getpid()}.partial")
+    try:
+        path.parent.mkdir(parents=True, exist_ok=True)
+        yield partial
+        os.replace(partial, path)
+    except OSError as error:
+        reason = error.strerror or str(error)
+        raise InputError([Fault(str(path), "", f"cannot be written: {reason}")]) from error
+    finally:
+        with suppress(OSError):
+            partial.unlink(missing_ok=True)
+
+
 def write(result: xr.Dataset, path: str | os.PathLike[str]) -> None:
     """Write a result as NetCDF-4, beside its final name, then rename it.
 
@@ -367,19 +397,12 @@ def write(result: xr.Dataset, path: str | os.PathLike[str]) -> None:
     strata.InputError
         If the file cannot be written there.
     """
-    path = Path(path)
-    partial = path.with_name(f".{path.name}.{os.getpid()}.partial")
-    try:
-        path.parent.mkdir(parents=True, exist_ok=True)
-        result.to_netcdf(
-            partial, engine="netcdf4", format="NETCDF4", encoding=_encoding(result)
-        )
-        os.replace(partial, path)
-    except OSError as error:
-        reason = error.strerror or str(error)
-        raise InputError([Fault(str(path), "", f"cannot be written: {reason}")]) from error
-    finally:
-        partial.unlink(missing_ok=True)
+    labelled = [name for name in _LABELS if name in result.indexes]
+    plain = result.reset_index(labelled).rename_vars(
+        {name: _LABELS[name] for name in labelled}
+    )
+    with replacing(path) as partial:
+        plain.to_netcdf(partial, engine="netcdf4", format="NETCDF4", encoding=_encoding(plain))
 
 
 def read(path: str | os.PathLike[str]) -> xr.Dataset:
@@ -397,6 +420,10 @@ def read(path: str | os.PathLike[str]) -> xr.Dataset:
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise InputError([Fault(str(path), "", f"cannot be read: {reason}")]) from error
+    labelled = [name for name, label in _LABELS.items() if label in result]
+    result = result.rename_vars({_LABELS[name]: name for name in labelled})
+    for name in labelled:
+        result = result.set_xindex(name)
     missing = {"time", "depth", "saturation", "gradient_depth"} - set(result.variables)
     if missing:
         reason = f"is no result of strata: it lacks {', '.join(sorted(missing))}"

@@ -43,7 +43,10 @@ def _concentration(name: str, standard: str = "", comment: str = "") -> Variable
     return Variable(PROFILE, "mol m-3", f"concentration of {name}", standard, comment)
 
 
-_BELOW = "extreme over the layers wholly below the current mixed layer"
+_BELOW = (
+    "extreme over the layers wholly below the surface layer, the one mixed within the year: water "
+    "mixed in the windy season stays saturated with air through the calm one"
+)
 
 COORDINATES = {
     "time": Variable(("time",), "", "time", "time"),
@@ -148,9 +151,9 @@ VARIABLES = {
     "carbon_dioxide_in_place": Variable(
         SERIES, "mol", "free carbon dioxide in the whole lake"
     ),
-    "methane_in_zone": Variable(("time", "zone"), "mol", "methane in a zone"),
+    "methane_in_zone": Variable(("zone", "time"), "mol", "methane in a zone"),
     "carbon_dioxide_in_zone": Variable(
-        ("time", "zone"), "mol", "free carbon dioxide in a zone"
+        ("zone", "time"), "mol", "free carbon dioxide in a zone"
     ),
     "zone_depth": Variable(("zone",), "m", "depth of the top of the zone"),
     # how close to bubbling
@@ -163,7 +166,7 @@ VARIABLES = {
     "surface_saturation": Variable(
         SERIES,
         "1",
-        "largest saturation with CH4, CO2 and H2S alone in the mixed layer",
+        "largest saturation with CH4, CO2 and H2S alone in the surface layer",
         "",
         "partial pressures of these gases over absolute pressure; air-saturated water is at "
         "1 by "
@@ -242,7 +245,7 @@ VARIABLES = {
     ),
     # books
     "ledger": Variable(
-        ("time", "ledger_term", "tracer"),
+        ("ledger_term", "tracer", "time"),
         "1",
         "amount since the start, into the lake positive",
         "",
@@ -251,7 +254,7 @@ VARIABLES = {
         "is there",
     ),
     "ledger_error": Variable(
-        ("time", "tracer"),
+        ("tracer", "time"),
         "1",
         "what the books do not explain, relative to start and throughput",
     ),
@@ -288,6 +291,6 @@ _PLANT = {
 
 #: Series of a plant, by the name the projection gives them.
 PLANT_SERIES = {
-    name: Variable(("time", "plant"), unit, long_name)
+    name: Variable(("plant", "time"), unit, long_name)
     for name, (unit, long_name) in _PLANT.items()
 }

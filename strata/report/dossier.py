@@ -11,7 +11,6 @@ import io
 import os
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from pathlib import Path
 
 import jinja2
 import numpy as np
@@ -19,7 +18,6 @@ import xarray as xr
 from matplotlib.figure import Figure
 
 from strata.caution import CAUTION
-from strata.errors import Fault, InputError
 from strata.lake.site import Lake
 from strata.limits import BREACHED, KEPT, UNCERTAIN, Limits, Verdict, VerdictRow
 from strata.margins import cubic_kilometres, tonnes
@@ -33,7 +31,7 @@ from strata.report.tables import (
     end_numbers,
     ledger_worst,
 )
-from strata.results import inputs_of
+from strata.results import inputs_of, replacing
 from strata.variables import PLANT_SERIES
 
 _KINDS = {KEPT: ("kept", "✓"), UNCERTAIN: ("unsure", "±"), BREACHED: ("breached", "✗")}
@@ -110,17 +108,8 @@ def dossier(
         If the file cannot be written.
     """
     text = page(results, verdicts, limits, lake, plans or {}, separate or {}, date, command)
-    path = Path(path)
-    partial = path.with_name(f".{path.name}.{os.getpid()}.partial")
-    try:
-        path.parent.mkdir(parents=True, exist_ok=True)
+    with replacing(path) as partial:
         partial.write_text(text, encoding="utf-8")
-        os.replace(partial, path)
-    except OSError as error:
-        reason = error.strerror or str(error)
-        raise InputError([Fault(str(path), "", f"cannot be written: {reason}")]) from error
-    finally:
-        partial.unlink(missing_ok=True)
 
 
 def page(
@@ -245,7 +234,7 @@ def _ledger(results: Mapping[str, xr.Dataset]) -> Table:
     tracers = [str(tracer) for tracer in first["tracer"].values]
     rows = []
     for name, result in results.items():
-        worst = np.abs(result["ledger_error"].values).max(axis=0)
+        worst = np.abs(result["ledger_error"].values).max(axis=1)
         known = dict(zip(result["tracer"].values, worst, strict=True))
         extra = [float(value) for key, value in known.items() if key not in tracers]
         cells = [
@@ -320,7 +309,7 @@ def _streams(results: Mapping[str, xr.Dataset]) -> list[Table]:
         running = result["plant_flow"].values > 0.0
         columns: list[tuple[str, int, int]] = []
         for number, plant in enumerate(result["plant"].values):
-            times = np.flatnonzero(running[:, number])
+            times = np.flatnonzero(running[number])
             if times.size == 0:
                 continue
             year = calendar_years(result)
@@ -334,7 +323,7 @@ def _streams(results: Mapping[str, xr.Dataset]) -> list[Table]:
                 continue
             values = result[f"plant_{series}"].values / factor
             cells = [
-                digits(float(values[time, number]), places) for _, number, time in columns
+                digits(float(values[number, time]), places) for _, number, time in columns
             ]
             rows.append([PLANT_SERIES[series].long_name, unit, *cells])
         headings = ["stream or power", "unit", *(label for label, _, _ in columns)]
@@ -489,7 +478,7 @@ def _gradient_table(results: Mapping[str, xr.Dataset]) -> Table:
 def _saturation_table(results: Mapping[str, xr.Dataset]) -> Table:
     return _by_year(
         results,
-        "How close to bubbling, below the mixed layer, at chosen years.",
+        "How close to bubbling, below the surface layer, at chosen years.",
         [
             ("largest_saturation", "largest saturation [1]", 1.0, 3),
             ("largest_saturation_depth", "at depth [m]", 1.0, 0),

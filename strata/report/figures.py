@@ -62,7 +62,7 @@ def _grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figur
         **options,
     )
     for ax in axes.flat:
-        ax.xaxis.set_major_locator(MaxNLocator(4, steps=[1, 2, 2.5, 5, 10]))
+        ax.xaxis.set_major_locator(MaxNLocator(5, steps=[1, 2, 2.5, 5, 10]))
         ax.yaxis.set_major_locator(MaxNLocator(5, steps=[1, 2, 2.5, 5, 10]))
     return figure, axes
 

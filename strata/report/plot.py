@@ -19,7 +19,7 @@ from matplotlib.axes import Axes
 from numpy.typing import NDArray
 
 from strata.lake.site import Profile
-from strata.limits import Limit, series
+from strata.limits import MILLION, Limit, series
 from strata.variables import PLANT_SERIES, VARIABLES
 
 Array = NDArray[np.float64]
@@ -171,7 +171,7 @@ def section(
         reach = float(np.nanmax(np.abs(values))) or 1.0
         limits, colours = limits or (-reach, reach), "PuOr"
     if variable == "saturation":  # near the surface it is at one by nature
-        mixed = thin["mixed_layer_depth"].values[:, np.newaxis]
+        mixed = thin["surface_layer_depth"].values[:, np.newaxis]
         values = np.where(thin["face"].values[:-1] >= mixed - 1e-6, values, np.nan)
         ax.set_facecolor("0.8")
     years = calendar_years(thin)
@@ -390,16 +390,19 @@ def against_limit(
     """
     artists: list[Artist] = []
     upward = (limit.sense or limit.subject.sense) == "most"
+    large = abs(limit.bound) >= MILLION
+    factor = MILLION if large else 1.0
+    bound = limit.bound / factor
     for number, (name, result) in enumerate(results.items()):
         values, _ = series(result, limit, baseline)
-        worst = worst_of_year(result, values, upward)
+        worst = worst_of_year(result, values / factor, upward)
         artists += ax.plot(*worst, **plan_style(number), label=name)
-    artists += limit_line(ax, limit.bound, f"limit: {limit.rule}")
+    artists += limit_line(ax, bound, f"limit: {limit.rule}")
     low, high = ax.get_ylim()
-    room = 0.08 * max(high - low, abs(limit.bound - low), abs(limit.bound - high))
-    ax.set_ylim(min(low, limit.bound - room), max(high, limit.bound + 2 * room))
+    room = 0.08 * max(high - low, abs(bound - low), abs(bound - high))
+    ax.set_ylim(min(low, bound - room), max(high, bound + 2 * room))
     ax.set_title(limit.words, loc="left", fontsize="medium")
-    ax.set_ylabel(f"[{limit.subject.unit}]")
+    ax.set_ylabel(f"[million {limit.subject.unit}]" if large else f"[{limit.subject.unit}]")
     ax.set_xlabel("year")
     if limit.quantity in ("gradient_depth_m", "gradient_sinking_m", "oxic_depth_m"):
         ax.invert_yaxis()
@@ -410,7 +413,7 @@ def gas_in_place(result: xr.Dataset, ax: Axes, gas: str = "methane") -> list[Art
     """Draw the gas in each zone through time, stacked [km3 at 0 degC, 1 atm]."""
     from strata.margins import cubic_kilometres
 
-    zones = result[f"{gas}_in_zone"]
+    zones = result[f"{gas}_in_zone"].transpose("time", "zone")
     years = calendar_years(result)
     amounts = cubic_kilometres(zones.values)
     order = range(amounts.shape[1] - 1, -1, -1)

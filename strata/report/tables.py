@@ -111,7 +111,7 @@ def mean_net_power(result: xr.Dataset) -> float:
     if "plant_net_power" not in result:
         return float("nan")
     power = result["plant_net_power"].values
-    return float(np.mean(np.nansum(power, axis=1))) / 1e6
+    return float(np.mean(np.nansum(power, axis=0))) / 1e6
 
 
 _PLACES = {"largest saturation": 3}
@@ -146,7 +146,7 @@ def comparison(results: Mapping[str, xr.Dataset], found: Mapping[str, Verdict]) 
 
 def ledger_worst(result: xr.Dataset) -> tuple[str, float]:
     """Return the tracer whose books close worst at any time, and by how much."""
-    worst = np.abs(result["ledger_error"].values).max(axis=0)
+    worst = np.abs(result["ledger_error"].values).max(axis=1)
     tracer = int(worst.argmax())
     return str(result["tracer"].values[tracer]), float(worst[tracer])
 
@@ -189,7 +189,7 @@ def inspect(result: xr.Dataset) -> str:
         ("least lift to bubbling", float(now["least_lift"]), 1, "m"),
         ("  at depth", float(now["least_lift_depth"]), 1, "m"),
         (
-            "saturation in the mixed layer, without air",
+            "saturation in the surface layer, without air",
             float(now["surface_saturation"]),
             3,
             "1",

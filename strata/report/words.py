@@ -50,8 +50,8 @@ def gradient_moved(result: xr.Dataset) -> str:
     if abs(moved) < 0.5:
         place = f"The main gradient stays at {depth[-1]:.0f} m"
     else:
-        place = f"The main gradient {way} {abs(moved):.1f} m, from {depth[0]:.0f} to "
-        f"{depth[-1]:.0f} m"
+        way_m = f"{way} {abs(moved):.1f} m, from {depth[0]:.0f} to {depth[-1]:.0f} m"
+        place = f"The main gradient {way_m}"
     return f"{place}, and its density step ends at {share:.0f} % of that at the start."
 
 
@@ -77,7 +77,7 @@ def returned_where(result: xr.Dataset) -> str:
     if "plant_trap_depth" not in result:
         return ""
     trapped = result["plant_trap_depth"].values
-    gradient = result["gradient_depth"].values[:, np.newaxis]
+    gradient = result["gradient_depth"].values
     running = np.isfinite(trapped)
     if not running.any():
         return ""
@@ -107,7 +107,7 @@ def bubbling(result: xr.Dataset) -> str:
     worst = int(np.nanargmax(saturation))
     when = str(result["time"].values[worst])[:10]
     return (
-        f"The largest saturation below the mixed layer is {saturation[0]:.2f} at the start, "
+        f"The largest saturation below the surface layer is {saturation[0]:.2f} at the start, "
         f"{saturation[-1]:.2f} at the end and never more than {saturation[worst]:.2f} "
         f"({when}, "
         f"{float(result['largest_saturation_depth'][worst]):.0f} m)."
@@ -284,10 +284,10 @@ def plant_caption(results: Mapping[str, xr.Dataset]) -> tuple[str, str]:
         running = purity[np.isfinite(purity) & (purity > 0.0)]
         if running.size:
             parts.append(
-                f"{name}: {mean_net_power(result):.1f} MW net on average, CH4 share of the "
+                f"{name}: {mean_net_power(result):.1f} MW net, CH4 share of the "
                 f"product {running.min():.2f} to {running.max():.2f}"
             )
-    caption = "; ".join(parts) or "No plant runs"
+    caption = f"Averages: {'; '.join(parts)}" if parts else "No plant runs"
     return caption + ".", f"Net power and purity of the product of every plant. {caption}."
 
 

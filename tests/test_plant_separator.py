@@ -216,8 +216,7 @@ def test_binding_co2_lowers_recovery_raises_purity_and_turns_the_best_pressure_t
     assert pressures[0] < of_bound < of_free < pressures[-1]
 
 
-def
-test_with_co2_bound_the_plain_recovery_is_one_minus_p_over_h_c_and_vapour_and_nitrogen_add():
+def test_with_co2_bound_vapour_and_nitrogen_add_to_the_plain_recovery():
     feed = replace(
         DEEP,
         dissolved={**DEEP.dissolved, "DIC": 0.0, "alkalinity": 0.0, "N2": 0.0, "H2S": 0.0},

@@ -4,9 +4,7 @@ The names a notebook needs are here and are imported when first used, so that ``
 costs nothing.
 """
 
-from importlib import import_module
-from typing import TYPE_CHECKING, Any
-
+TYPE_CHECKING = False  # as in typing, whose import alone would double the time of --help
 if TYPE_CHECKING:
     from strata import gas, results, water
     from strata.caution import CAUTION
@@ -60,8 +58,11 @@ __all__ = [
 ]
 
 
-def __getattr__(name: str) -> Any:
+def __getattr__(name: str) -> object:
     """Import a public name from its room when it is first asked for."""
+    from importlib import import_module
+
+    value: object
     if name in _ROOMS:
         value = import_module(_ROOMS[name])
     elif name in _HOME:

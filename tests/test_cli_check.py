@@ -5,11 +5,11 @@ import json
 from click.testing import CliRunner
 
 from strata.caution import CAUTION
-from strata.cli import main
+from strata.cli.group import group
 
 
 def run(*arguments):
-    return CliRunner().invoke(main, ["check", *map(str, arguments)])
+    return CliRunner().invoke(group, ["check", *map(str, arguments)])
 
 
 def test_sound_files_are_named_with_their_kind(folder):

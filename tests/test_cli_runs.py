@@ -8,13 +8,13 @@ from click.testing import CliRunner
 
 from strata import results
 from strata.caution import CAUTION
-from strata.cli import main
+from strata.cli.group import group
 
 SHORT = ("--years", "1", "--step-days", "5")
 
 
 def run(*arguments):
-    return CliRunner().invoke(main, [str(argument) for argument in arguments])
+    return CliRunner().invoke(group, [str(argument) for argument in arguments])
 
 
 def test_inspect_shows_the_lake_of_today(folder):

@@ -1,17 +1,12 @@
 """The command line: a command parses, calls one function of the library, and reports.
 
-Commands are imported when they are asked for, so that ``strata --help`` pays for none of them.
+This module alone is imported for ``strata --help``, and imports next to nothing, so that help
+is as quick as the interpreter.  All else waits in ``strata.cli.group`` for a command.
 """
 
-from importlib import import_module
+import sys
 
-import click
-
-from strata import __version__
 from strata.caution import CAUTION
-from strata.errors import ComputationError, StrataError
-
-DONE, BREACHED, BAD_INPUT, GAVE_UP = 0, 1, 2, 3
 
 #: Every command, in the order of the help, with its line there; its module bears its name.
 COMMANDS = {
@@ -22,47 +17,57 @@ COMMANDS = {
     "check": "Validate input files without running anything.",
 }
 
+#: Exit codes.
+DONE, BREACHED, BAD_INPUT, GAVE_UP = 0, 1, 2, 3
 
-class Commands(click.Group):
-    """The commands of the table above, and the one place where errors become exit codes."""
-
-    def list_commands(self, ctx: click.Context) -> list[str]:
-        """List the commands without importing them."""
-        return list(COMMANDS)
-
-    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
-        """Import a command."""
-        if cmd_name not in COMMANDS:
-            return None
-        command: click.Command = import_module(f"strata.cli.{cmd_name}").command
-        return command
-
-    def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
-        """Write the table of commands."""
-        with formatter.section("Commands"):
-            formatter.write_dl(list(COMMANDS.items()))
-
-    def invoke(self, ctx: click.Context) -> object:
-        """Run a command; what strata refuses to do ends in a message and a code."""
-        try:
-            return super().invoke(ctx)
-        except StrataError as error:
-            for line in str(error).splitlines():
-                click.echo(line, err=True)
-            ctx.exit(GAVE_UP if isinstance(error, ComputationError) else BAD_INPUT)
+_WIDTH = 79
 
 
-@click.command(
-    cls=Commands,
-    context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 95},
-    epilog=f"{CAUTION}\n\nExit codes: 0 done, 1 a limit is breached (with --strict), "
-    "2 bad input, 3 the computation refused to go on.",
-)
-@click.version_option(__version__, prog_name="strata", message="%(prog)s %(version)s")
 def main() -> None:
-    """See what gas extraction does to a gas-rich stratified lake over decades.
+    """Run the command line."""
+    if sys.argv[1:] in ([], ["-h"], ["--help"]):
+        print(help_text())
+    else:
+        from strata.cli.group import group
 
-    \b
-    Example:
-      strata demo
-    """
+        group(prog_name="strata")
+
+
+def help_text() -> str:
+    """Return what ``strata --help`` says."""
+    column = max(map(len, COMMANDS)) + 2
+    return "\n".join(
+        [
+            "Usage: strata [OPTIONS] COMMAND [ARGS]...",
+            "",
+            "What gas extraction does to a gas-rich stratified lake over decades.",
+            "",
+            "Example:",
+            "  strata demo",
+            "",
+            "Commands (strata COMMAND --help says more):",
+            *(f"  {name:{column}}{line}" for name, line in COMMANDS.items()),
+            "",
+            "Options:",
+            "  --version   Show the version.",
+            "  -h, --help  Show this text.",
+            "",
+            "Exit codes:",
+            f"  {DONE}  done",
+            f"  {BREACHED}  a limit is breached, with --strict",
+            f"  {BAD_INPUT}  bad input",
+            f"  {GAVE_UP}  the computation refused to go on",
+            "",
+            *_wrapped(CAUTION),
+        ]
+    )
+
+
+def _wrapped(text: str) -> list[str]:
+    """Return a paragraph as lines."""
+    lines = [""]
+    for word in text.split():
+        if len(lines[-1]) + len(word) >= _WIDTH:
+            lines.append("")
+        lines[-1] = f"{lines[-1]} {word}".strip()
+    return lines

@@ -248,7 +248,9 @@ def part(
         raise ComputationError(f"{where}: no equilibrium found at {pressure:g} Pa")
     off = approach * gas[0] * y[0]
     names = ("DIC" if name == "CO2" else name for name in LAKE_GASES)
-    left = {name: water.of(name) - off[i] for i, name in enumerate(names) if name != "Ar"}
+    left = {
+        name: water.of(name) - float(off[i]) for i, name in enumerate(names) if name != "Ar"
+    }
     dissolved = {**water.dissolved, **left}
     flows = {name: water.flow * float(off[i]) for i, name in enumerate((*LAKE_GASES, VAPOUR))}
     return Parted(

@@ -1,0 +1,137 @@
+"""What a plant amounts to: every stream as a row, and the product, energy and air in a year.
+
+Rows are mappings of names with units to numbers, so that text, JSON and the dossier show the
+same thing.
+"""
+
+import math
+
+from scipy.optimize import brentq
+
+from strata.constants import CALCITE_MASS, LIME_MASS
+from strata.gas import speciate
+from strata.lake.site import Site
+from strata.plant import power
+from strata.plant.chemistry import density_of, free_gases
+from strata.plant.operate import Operation
+from strata.plant.streams import NORMAL_PRESSURE, GasStream, WaterStream
+from strata.species import LAKE_GASES, SPECIES, VAPOUR
+from strata.water.transport import vapour_pressure_at
+
+Row = dict[str, float | str]
+
+_WATER_GASES = ("CH4", "CO2", "N2", "O2", "H2S")
+
+
+def stream_rows(operation: Operation, site: Site) -> list[Row]:
+    """Return one row per stream of a plant, in the order of the process.
+
+    Water: m3/s, degC, pH, density at the pressure of the air, solids, mol/m3 of the free
+    gases, DIC, alkalinity, calcium.  Gas: mol/s, normal m3/h, degC, bar, mole fractions with
+    vapour.
+    """
+    return [
+        _water_row(name, stream, site)
+        if isinstance(stream, WaterStream)
+        else _gas_row(name, stream)
+        for name, stream in operation.streams.items()
+    ]
+
+
+def _water_row(name: str, water: WaterStream, site: Site) -> Row:
+    """Return one water stream as a row."""
+    carbonate = speciate(
+        water.temperature,
+        water.salinity,
+        water.of("DIC"),
+        water.of("alkalinity"),
+        site.air_pressure,
+    )
+    free = free_gases(water, site).gases
+    row: Row = {
+        "stream": name,
+        "kind": "water",
+        "flow_m3_s": water.flow,
+        "temperature_degC": water.temperature,
+        "pH": float(carbonate.ph),
+        "density_kg_m3": density_of(water, site, site.air_pressure),
+        "salinity_g_kg": water.salinity,
+        "solids_kg_m3": water.solids,
+    }
+    row |= {f"{gas}_mol_m3": free[gas] for gas in _WATER_GASES}
+    row |= {f"{part}_mol_m3": water.of(part) for part in ("DIC", "alkalinity", "calcium")}
+    return row
+
+
+def _gas_row(name: str, gas: GasStream) -> Row:
+    """Return one gas stream as a row."""
+    total = gas.total
+    row: Row = {
+        "stream": name,
+        "kind": "gas",
+        "flow_mol_s": total,
+        "normal_flow_m3_h": 3600.0 * gas.normal_flow,
+        "temperature_degC": gas.temperature,
+        "pressure_bar": gas.pressure / 1e5,
+    }
+    parts = (*LAKE_GASES, VAPOUR)
+    return row | {
+        f"{part}_share": gas.of(part) / total if total > 0 else 0.0 for part in parts
+    }
+
+
+def dew_point(gas: GasStream) -> float:
+    """Return the temperature [degC] at which the vapour of a gas condenses; nan without vapour.
+
+    At its pressure, as an ideal gas over pure water or, below 0 degC, supercooled water.
+    """
+    if gas.of(VAPOUR) <= 0.0:
+        return math.nan
+    wanted = gas.pressure * gas.of(VAPOUR) / gas.total
+    return float(brentq(lambda t: vapour_pressure_at(t) - wanted, -60.0, 200.0, xtol=1e-6))
+
+
+def figures(operation: Operation) -> dict[str, float]:
+    """Return what a plant makes, uses and lets go at this load, by names with units.
+
+    Yearly sums are this load through a year of 365.25 days.  Emission is product burnt to
+    CO2, vent as it is and the CO2 of the lime's kiln; methane counts 27.9 times its mass
+    (IPCC AR6, 100 years, table 7.SM.7).
+    """
+    product, used = operation.product, operation.power
+    year = power.SECONDS_PER_YEAR
+    carbon = SPECIES["CO2"].molar_mass
+    burnt = (product.of("CH4") + product.of("CO2")) * carbon
+    vented = power.carbon_dioxide_equivalent(operation.vented)
+    kiln = operation.kiln_carbon_dioxide * carbon
+    methane = product.of("CH4")
+    taken = sum(w for name, w in used.items() if name not in ("electric", "net"))
+    return {
+        "recovery": operation.recovery,
+        "purity": product.share("CH4"),
+        "normal_flow_m3_h": 3600.0 * product.normal_flow,
+        "heating_value_MJ_m3": power.heating_value(product) / 1e6,
+        "wobbe_index_MJ_m3": power.wobbe_index(product) / 1e6,
+        "dew_point_degC": dew_point(product),
+        "thermal_power_MW": power.thermal_power(product) / 1e6,
+        "electric_power_MW": used["electric"] / 1e6,
+        "used_power_MW": taken / 1e6,
+        "net_power_MW": used["net"] / 1e6,
+        "specific_power_kWh_m3": _per_normal_volume(taken, methane),
+        "net_energy_GWh_a": used["net"] * year / 3.6e12,
+        "CH4_vented_t_a": operation.vented.of("CH4") * SPECIES["CH4"].molar_mass * year / 1e3,
+        "CO2_vented_t_a": operation.vented.of("CO2") * carbon * year / 1e3,
+        "CO2_product_burnt_t_a": burnt * year / 1e3,
+        "CO2_kiln_t_a": kiln * year / 1e3,
+        "CO2_equivalent_t_a": (burnt + vented + kiln) * year / 1e3,
+        "lime_t_a": operation.lime * LIME_MASS * year / 1e3,
+        "calcite_t_a": operation.solids * CALCITE_MASS * year / 1e3,
+    }
+
+
+def _per_normal_volume(watts: float, methane: float) -> float:
+    """Return kWh per normal m3 of methane; nan without methane."""
+    if methane <= 0.0:
+        return math.nan
+    volume = GasStream({"CH4": methane}, 0.0, NORMAL_PRESSURE).normal_flow
+    return watts / volume / 3.6e6

@@ -44,8 +44,8 @@ def _concentration(name: str, standard: str = "", comment: str = "") -> Variable
 
 
 _BELOW = (
-    "extreme over the layers wholly below the surface layer, the one mixed within the year: water "
-    "mixed in the windy season stays saturated with air through the calm one"
+    "extreme over the layers wholly below the surface layer, the one mixed within the year: "
+    "water mixed in the windy season stays saturated with air through the calm one"
 )
 
 COORDINATES = {

@@ -9,6 +9,7 @@ import datetime
 import hashlib
 import io
 import os
+import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
@@ -36,6 +37,7 @@ from strata.variables import PLANT_SERIES
 
 _KINDS = {KEPT: ("kept", "✓"), UNCERTAIN: ("unsure", "±"), BREACHED: ("breached", "✗")}
 _DPI = 110
+_PATH, _DECIMALS = re.compile(r' d="[^"]*"'), re.compile(r"(\.\d\d)\d+")
 #: What a share (True) or a change (False) is measured against, in words.
 _REFERENCES = {
     ("start", True): " of the start",
@@ -215,7 +217,7 @@ def _summary(results: Mapping[str, xr.Dataset]) -> Table:
         [
             name,
             *(
-                digits(value, 3 if key == "largest saturation" else 1)
+                digits(value, 3 if key == "largest saturation" else 1, sign=key == "moved [m]")
                 for key, value in row.items()
             ),
         ]
@@ -300,6 +302,10 @@ _STREAMS = (
 )
 
 
+#: Series left out where a plan has none of it.
+_SILENT = ("lime", "solids", "pump_power", "vacuum_power", "compression_power")
+
+
 def _streams(results: Mapping[str, xr.Dataset]) -> list[Table]:
     """Return one table per plan: what goes in and out of its plants, early and at the end."""
     tables = []
@@ -322,9 +328,10 @@ def _streams(results: Mapping[str, xr.Dataset]) -> list[Table]:
             if f"plant_{series}" not in result:
                 continue
             values = result[f"plant_{series}"].values / factor
-            cells = [
-                digits(float(values[number, time]), places) for _, number, time in columns
-            ]
+            chosen = [float(values[number, time]) for _, number, time in columns]
+            if series in _SILENT and not any(chosen):
+                continue
+            cells = [digits(value, places) for value in chosen]
             rows.append([PLANT_SERIES[series].long_name, unit, *cells])
         headings = ["stream or power", "unit", *(label for label, _, _ in columns)]
         tables.append(
@@ -345,7 +352,9 @@ def _embedded(figure: Figure) -> tuple[str, int, int]:
         buffer, format="svg", dpi=_DPI, metadata={"Date": None, "Creator": "strata"}
     )
     width, height = (round(96 * inches) for inches in figure.get_size_inches())
-    code = base64.b64encode(buffer.getvalue()).decode("ascii")
+    # a hundredth of a point is finer than any screen or printer
+    svg = _PATH.sub(lambda path: _DECIMALS.sub(r"\1", path[0]), buffer.getvalue().decode())
+    code = base64.b64encode(svg.encode()).decode("ascii")
     return f"data:image/svg+xml;base64,{code}", width, height
 
 
@@ -409,8 +418,9 @@ def _pictures(
             _picture(
                 figures.differences(planned, baseline, ("methane", "salinity")),
                 words.difference_caption(planned, baseline),
-                "Purple is more, orange less than in the lake left alone; the dotted line is "
-                "zero, the black one the main gradient.",
+                "Purple is more, orange less than in the lake left alone; dotted is zero, "
+                "where less than a hundredth of the scale counts as none; black is the "
+                "main gradient.",
             )
         )
     drawn.append(

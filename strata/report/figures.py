@@ -164,6 +164,8 @@ def _colour_bar(figure: Figure, mesh: Any, ax: Any, variable: str, words: str = 
     bar = figure.colorbar(mesh, cax=room)
     name, unit, _, _ = plot.SHOWN[variable]
     bar.set_label(f"{words}{name} [{unit}]")
+    if words:
+        room.axhline(0.0, color="0.2", linewidth=1.0, linestyle="dotted")
     bar.outline.set_visible(False)
 
 

@@ -196,18 +196,10 @@ def section(
         all_years, result["gradient_depth"].values, color=line_colour, linewidth=1.2
     )
     if baseline is not None:
-        middle = thin["depth"].values
-        artists.append(
-            ax.contour(
-                years,
-                middle,
-                values.T,
-                [0.0],
-                colors="0.2",
-                linewidths=0.6,
-                linestyles="dotted",
-            )
-        )
+        # round-off around nought has no sign worth a line
+        signed = np.where(np.abs(values) < 0.01 * high, 0.01 * high, values)
+        zero: dict[str, Any] = {"colors": "0.2", "linewidths": 0.7, "linestyles": "dotted"}
+        artists.append(ax.contour(years, thin["depth"].values, signed.T, [0.0], **zero))
     depth_axis(ax, float(thin["face"].values[-1]))
     ax.set_xlabel("year")
     ax.set_xlim(years[0], years[-1])
@@ -309,7 +301,7 @@ def gas_pressure(
         "CH4": at["methane_partial_pressure"].values / BAR,
     }
     names = {"other": "air and vapour", "CO2": "CO$_2$", "CH4": "CH$_4$"}
-    hatches = {"other": "", "CO2": "....", "CH4": "////"}
+    hatches = {"other": "", "CO2": "---", "CH4": "///"}
     artists: list[Artist] = []
     left = np.zeros_like(total)
     fills: list[Artist] = []
@@ -413,8 +405,9 @@ def gas_in_place(result: xr.Dataset, ax: Axes, gas: str = "methane") -> list[Art
     """Draw the gas in each zone through time, stacked [km3 at 0 degC, 1 atm]."""
     from strata.margins import cubic_kilometres
 
-    zones = result[f"{gas}_in_zone"].transpose("time", "zone")
-    years = calendar_years(result)
+    thin = _yearly(result)
+    zones = thin[f"{gas}_in_zone"].transpose("time", "zone")
+    years = calendar_years(thin)
     amounts = cubic_kilometres(zones.values)
     order = range(amounts.shape[1] - 1, -1, -1)
     colours = ["#4B6A9B", "#9FB8D9", "#DCE6F2"]

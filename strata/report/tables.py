@@ -165,7 +165,7 @@ def gradients_of(result: xr.Dataset, time: int = 0) -> tuple[Gradient, ...]:
     """Return all gradients of density at one time, from the top down."""
     profiles = StabilityProfiles(
         result["face"].values[1:-1].astype(float),
-        result["buoyancy_frequency_squared"].values[time : time + 1, 1:-1].astype(float),
+        result["buoyancy_frequency_squared"].values[time, 1:-1].astype(float),
         float(result.attrs["gravity_m_s2"]),
     )
     return profiles.gradients(0)

@@ -5,10 +5,11 @@ from collections.abc import Mapping
 import numpy as np
 import xarray as xr
 
+from strata.gradients import main_gradient
 from strata.limits import BREACHED, UNCERTAIN, Limits, Verdict
 from strata.margins import cubic_kilometres
 from strata.plant.plan import Plan
-from strata.report.tables import digits, end_numbers, mean_net_power
+from strata.report.tables import digits, end_numbers, gradients_of, mean_net_power
 
 BAR = 1e5
 
@@ -52,7 +53,14 @@ def gradient_moved(result: xr.Dataset) -> str:
     else:
         way_m = f"{way} {abs(moved):.1f} m, from {depth[0]:.0f} to {depth[-1]:.0f} m"
         place = f"The main gradient {way_m}"
-    return f"{place}, and its density step ends at {share:.0f} % of that at the start."
+    told = f"{place}, and its density step ends at {share:.0f} % of that at the start."
+    strongest = main_gradient(gradients_of(result, -1))
+    if strongest is not None and strongest.strength > 1.05 * float(strength[-1]):
+        told += (
+            f" The strongest gradient then lies at {strongest.depth:.0f} m "
+            f"({strongest.strength:.2f} kg/m³)."
+        )
+    return told
 
 
 def methane_went(result: xr.Dataset, baseline: xr.Dataset | None) -> str:
@@ -178,7 +186,7 @@ def limits_caption(found: Mapping[str, Verdict], limits: Limits) -> tuple[str, s
         f"{listed(kept)} {'stays' if len(kept) == 1 else 'stay'} on the allowed side of every "
         "limit."
         if kept
-        else "Every run passes at least one limit."
+        else "Every run breaches at least one limit."
     )
     alt = (
         f"{len(limits.limits)} small drawings, one per limit, every plan in each. "

@@ -8,8 +8,8 @@ import math
 
 from scipy.optimize import brentq
 
-from strata.constants import CALCITE_MASS, LIME_MASS
-from strata.gas import speciate
+from strata.constants import CALCITE_MASS, GAS_CONSTANT, LIME_MASS, ZERO_CELSIUS
+from strata.gas import fugacity_coefficients, speciate
 from strata.lake.site import Site
 from strata.plant import power
 from strata.plant.chemistry import density_of, free_gases
@@ -20,6 +20,7 @@ from strata.water.transport import vapour_pressure_at
 
 Row = dict[str, float | str]
 
+_WATER_VOLUME = 18.07e-6  # m3/mol, liquid water at 25 degC
 _WATER_GASES = ("CH4", "CO2", "N2", "O2", "H2S")
 
 
@@ -81,13 +82,17 @@ def _gas_row(name: str, gas: GasStream) -> Row:
 
 
 def dew_point(gas: GasStream) -> float:
-    """Return the temperature [degC] at which the vapour of a gas condenses; nan without vapour.
+    """Return the temperature [degC] at which the vapour of a gas condenses; nan without it.
 
-    At its pressure, as an ideal gas over pure water or, below 0 degC, supercooled water.
+    At its pressure over pure water, supercooled below 0 degC; the gas by Peng-Robinson.
     """
     if gas.of(VAPOUR) <= 0.0:
         return math.nan
-    wanted = gas.pressure * gas.of(VAPOUR) / gas.total
+    shares = {name: flow / gas.total for name, flow in gas.flows.items()}
+    real = fugacity_coefficients(gas.temperature, gas.pressure, shares)[VAPOUR]
+    wanted = gas.pressure * shares[VAPOUR] * float(real)
+    kelvin = gas.temperature + ZERO_CELSIUS
+    wanted /= math.exp(_WATER_VOLUME * gas.pressure / (GAS_CONSTANT * kelvin))
     return float(brentq(lambda t: vapour_pressure_at(t) - wanted, -60.0, 200.0, xtol=1e-6))
 
 

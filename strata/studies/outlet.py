@@ -1,5 +1,6 @@
 """Where the water a plant returns would go if its temperature or its ports were different."""
 
+import math
 from dataclasses import replace
 
 import numpy as np
@@ -25,6 +26,7 @@ _OUTCOMES = {
     "end_depth": ("m", "furthest depth that its plume reaches"),
     "dilution": ("1", "water that spreads over water returned"),
     "density_excess": ("kg m-3", "density over the lake's at the outlet"),
+    "port_speed": ("m s-1", "speed of the water in the ports"),
     "upper_reach": ("1", "share of the water returned that spreads above its outlet"),
 }
 
@@ -42,8 +44,8 @@ def vary_outlets(lake: Lake, plan: Plan, plant: str | None = None) -> xr.Dataset
     Returns
     -------
     xarray.Dataset
-        ``trap_depth``, ``end_depth``, ``dilution``, ``density_excess`` and ``upper_reach``
-        over ``outlet`` and ``variation`` (:data:`VARIATIONS`).
+        ``trap_depth``, ``end_depth``, ``dilution``, ``density_excess``, ``port_speed`` and
+        ``upper_reach`` over ``outlet`` and ``variation`` (:data:`VARIATIONS`).
     """
     setting = setting_of(lake, plan, plant)
     run = operate(setting.plant, setting.feed, setting.wash_feed, lake.site)
@@ -63,6 +65,7 @@ def vary_outlets(lake: Lake, plan: Plan, plant: str | None = None) -> xr.Dataset
                 path.end_depth,
                 path.dilution,
                 excess_density(source, setting.around),
+                source.flow / (source.ports * 0.25 * math.pi * source.port_diameter**2),
                 path.above_outlet,
             )
     names = [f"{where.depth:g} m" for where, _ in found]

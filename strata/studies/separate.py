@@ -303,7 +303,8 @@ def _turning(case: xr.Dataset, at: int) -> str:
     used = made - case["net_energy"].values / 1e6
     return (
         f" (made {made[at]:.2f}, used {used[at]:.2f} MJ/m3 there; {made[0]:.2f} and"
-        f" {used[0]:.2f} at the lowest pressure, {made[-1]:.2f} and {used[-1]:.2f} at the highest)"
+        f" {used[0]:.2f} at the lowest pressure, {made[-1]:.2f} and"
+        f" {used[-1]:.2f} at the highest)"
     )
 
 

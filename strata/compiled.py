@@ -44,6 +44,12 @@ def _cache_folder() -> str | None:
         return None
 
 
+def has_to_compile() -> bool:
+    """Tell whether nothing is cached yet for this state of the sources."""
+    folder = _cache_folder()
+    return folder is None or next(Path(folder).rglob("*.nbi"), None) is None
+
+
 def _in_folder(folder: str | None, build: Callable[[bool], Any]) -> Any:
     """Run ``build(use_cache)`` with the compiler's cache in the given folder."""
     if folder is None:

@@ -7,7 +7,7 @@ import pytest
 
 from strata.caution import CAUTION, MARK
 from strata.cli import output
-from strata.cli.terminal import progress
+from strata.cli.terminal import announce_compilation, progress
 from strata.errors import StrataError
 
 
@@ -77,3 +77,14 @@ def test_progress_never_touches_standard_output(capsys):
     shown = capsys.readouterr()
     assert shown.out == ""
     assert "waiting" in shown.err
+
+
+def test_the_first_run_says_that_it_compiles(monkeypatch, capsys, tmp_path):
+    from strata import compiled
+
+    monkeypatch.setattr(compiled, "_cache_folder", lambda: str(tmp_path))
+    announce_compilation()
+    assert "first run: compiling" in capsys.readouterr().err
+    (tmp_path / "formula.nbi").write_bytes(b"")
+    announce_compilation()
+    assert capsys.readouterr().err == ""

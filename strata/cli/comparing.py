@@ -33,6 +33,7 @@ def run(
         Whether a plan breaches a limit.
     """
     terminal.show_warnings()
+    terminal.announce_compilation()
     site, operators, rules = load_all(lake, plans, limits)
     names = [NO_PLAN, *(plan.name for plan in operators)]
     files = {name: out / f"{_file_name(name)}.nc" for name in names} if out else {}

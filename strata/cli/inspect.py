@@ -25,6 +25,7 @@ def command(lake: Path, out: Path | None, as_json: bool) -> None:
     from strata.report import tables
 
     terminal.show_warnings()
+    terminal.announce_compilation()
     if out:
         output.writable_file(out)
     found = today(load_lake(lake))

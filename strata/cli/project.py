@@ -44,6 +44,7 @@ def command(
     from strata.studies.compare import compare
 
     terminal.show_warnings()
+    terminal.announce_compilation()
     if out:
         output.writable_file(out)
     rules_file = options.limits_file(lake, limits) if strict else limits

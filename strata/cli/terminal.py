@@ -28,6 +28,14 @@ def progress(label: str) -> Iterator[Callable[[float], None]]:
         show(1.0)
 
 
+def announce_compilation() -> None:
+    """Say why the first run on a machine takes longer, where it will."""
+    from strata.compiled import has_to_compile
+
+    if has_to_compile():
+        click.echo("first run: compiling for this machine takes about half a minute", err=True)
+
+
 def show_warnings() -> None:
     """Send warnings of the library to standard error, one line each."""
     handler = logging.StreamHandler(sys.stderr)

@@ -22,7 +22,7 @@ import strata
 from strata import clock
 from strata.column.column import Column
 from strata.column.start import first_day
-from strata.column.tracers import DIC, TRACERS
+from strata.column.tracers import DIC, OXYGEN, SALINITY, TRACERS
 from strata.compiled import broadcast
 from strata.coupling import Fleet
 from strata.projection import carry_on
@@ -34,42 +34,47 @@ SEED = 20260101
 
 #: A rough lake to begin with: foot of each body of water [m] and what it holds.
 GUESS = [
-    # foot, degC, g/kg, CO2, alkalinity, CH4, N2, O2, H2S, phosphate [mol or eq per m3]
-    (62, 23.3, 1.15, 0.02, 14.5, 0.0, 0.5, 0.23, 0.0, 0.0005),
-    (95, 22.7, 1.6, 1.0, 20.0, 0.3, 0.5, 0.0, 0.02, 0.005),
-    (205, 23.0, 2.0, 4.0, 25.0, 2.0, 0.5, 0.0, 0.05, 0.01),
-    (290, 24.2, 3.9, 50.0, 48.0, 11.0, 0.5, 0.0, 0.1, 0.03),
-    (400, 25.4, 5.6, 88.0, 70.0, 17.5, 0.5, 0.0, 0.2, 0.05),
+    # foot, degC, g/kg, O2, CO2, alkalinity, CH4, N2, H2S, phosphate [mol or eq per m3]
+    (50, 23.3, 1.15, 0.23, 0.02, 14.5, 0.0, 0.45, 0.0, 0.0005),
+    (95, 22.7, 1.6, 0.0, 1.0, 20.0, 0.3, 0.55, 0.02, 0.005),
+    (205, 23.0, 2.0, 0.0, 4.0, 25.0, 2.0, 0.6, 0.05, 0.01),
+    (290, 24.2, 3.9, 0.0, 50.0, 48.0, 11.0, 0.7, 0.1, 0.03),
+    (400, 25.4, 5.6, 0.0, 88.0, 70.0, 17.5, 0.8, 0.2, 0.05),
 ]
-GAS_COLUMNS = ("CO2", "alkalinity", "CH4", "N2", "O2", "H2S", "phosphate")
-#: Stated error of a sample: share of the value and least amount [mol or eq per m3].
+SAMPLES = ("CO2", "alkalinity", "CH4", "N2", "H2S", "phosphate")
+#: Stated error of a sample: share of the value and least amount [mol or eq per m3], which is
+#: also the least that the laboratory reports.
 SAMPLE_ERROR = {
-    "CO2": (0.015, 0.01),
-    "alkalinity": (0.005, 0.02),
+    "CO2": (0.012, 0.005),
+    "alkalinity": (0.004, 0.02),
     "CH4": (0.015, 0.005),
-    "N2": (0.02, 0.0),
-    "O2": (0.02, 0.002),
-    "H2S": (0.03, 0.001),
+    "N2": (0.015, 0.0),
+    "H2S": (0.03, 0.0005),
     "phosphate": (0.02, 0.00005),
 }
-TEMPERATURE_ERROR, CONDUCTIVITY_ERROR = 0.003, 0.003  # degC, mS/cm, as the lake file states
+#: Most of a stated error is calibration, common to all depths; the rest differs by sample.
+CALIBRATION, SCATTER = 0.8, 0.15
+#: Errors of the probe, as the lake file states them.
+TEMPERATURE_ERROR, CONDUCTIVITY_ERROR, OXYGEN_ERROR = 0.003, 0.003, 0.003  # degC, mS/cm, mol/m3
 FACTOR = 0.80  # g/kg per mS/cm at 25 degC, as the lake file states
 
 
-def write_ctd(path: Path, depth, temperature, salinity, day: str, rng=None) -> None:
+def write_ctd(path: Path, depth, temperature, salinity, oxygen, day: str, rng=None) -> None:
     """Write a CTD cast, with the noise of the instrument where a generator is given."""
     conductivity = salinity / salinity_from_conductivity(np.ones_like(depth), temperature, FACTOR)
     if rng is not None:
         temperature = temperature + rng.normal(0, TEMPERATURE_ERROR, len(depth))
         conductivity = conductivity + rng.normal(0, CONDUCTIVITY_ERROR, len(depth))
+        read = oxygen + rng.normal(0, OXYGEN_ERROR, len(depth))
+        oxygen = np.where(read < 2 * OXYGEN_ERROR, 0.0, read)  # the optode's detection limit
     lines = [
         f"# Lake survey of {day}, invented: CTD lowered from the surface, averaged over 1 m",
         "# standard deviation of the instrument: see the lake file",
-        "depth_m,temperature_degC,conductivity_mS_cm",
+        "depth_m,temperature_degC,conductivity_mS_cm,O2_mol_m3",
     ]
     lines += [
-        f"{z:g},{t:.4f},{c:.4f}"
-        for z, t, c in zip(depth, temperature, conductivity, strict=True)
+        f"{z:g},{t:.4f},{c:.4f},{o:.4f}"
+        for z, t, c, o in zip(depth, temperature, conductivity, oxygen, strict=True)
     ]
     path.write_text("\n".join(lines) + "\n")
 
@@ -89,7 +94,7 @@ def write_samples(path: Path, depth, values: dict[str, np.ndarray], day: str) ->
         for name, value in values.items():
             share, least = SAMPLE_ERROR[name]
             error = max(share * abs(value[row]), least)
-            cells += [f"{value[row]:.5g}", f"{error:.2g}"]
+            cells += [f"{value[row]:.4g}", f"{error:.2g}"]
         lines.append(",".join(cells))
     path.write_text("\n".join(lines) + "\n")
 
@@ -103,10 +108,10 @@ def write_guess(folder: Path, day: str) -> None:
     for upper, foot in enumerate(feet[:-1]):
         share = 0.5 * (1 + np.tanh((depth - foot) / 4.0))
         profile += share[:, None] * (table[upper + 1] - table[upper])
-    write_ctd(folder / "ctd.csv", depth, profile[:, 0], profile[:, 1], day)
+    write_ctd(folder / "ctd.csv", depth, *profile[:, :3].T, day)
     at = np.unique(np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 396])
     samples = {
-        name: np.interp(at, depth, profile[:, 2 + k]) for k, name in enumerate(GAS_COLUMNS)
+        name: np.interp(at, depth, profile[:, 3 + k]) for k, name in enumerate(SAMPLES)
     }
     write_samples(folder / "gas.csv", at, samples, day)
 
@@ -145,7 +150,7 @@ def spin_up(lake, most: int, step_days: float, tolerance: float, values=None) ->
 def sample_depths(column: Column) -> np.ndarray:
     """Return depths for water samples: across every gradient, and between them."""
     z, stability = column.basin.faces[1:-1], column.seen.stability[1:-1]
-    peaks, _ = find_peaks(stability, prominence=2e-6, distance=5)
+    peaks, _ = find_peaks(stability, prominence=1e-4, distance=5)
     wanted = [1.0, 20.0, 396.0]
     edges = []
     for peak in peaks:
@@ -176,15 +181,19 @@ def survey(column: Column, folder: Path, day: str) -> None:
 
     depth = np.arange(0.0, 400.0, 1.0)
     in_situ = broadcast(in_situ_temperature)(values[:, 0], column.pressure)
-    write_ctd(folder / "ctd.csv", depth, at(depth, in_situ), at(depth, values[:, 1]), day, rng)
+    probe = [at(depth, of) for of in (in_situ, values[:, SALINITY], values[:, OXYGEN])]
+    write_ctd(folder / "ctd.csv", depth, *probe, day, rng)
     where = sample_depths(column)
     taken = {}
-    for name in GAS_COLUMNS:
+    for name in SAMPLES:
         true = column.free_co2() if name == "CO2" else values[:, TRACERS.index(name)]
         share, least = SAMPLE_ERROR[name]
         exact = at(where, true)
-        noise = rng.normal(0, 1, len(where)) * np.maximum(share * exact, np.minimum(least, exact))
-        taken[name] = np.maximum(exact + noise, 0.0)
+        scale = 1.0 + CALIBRATION * share * rng.uniform(-1.0, 1.0)
+        read = scale * exact + rng.normal(0, 1, len(where)) * SCATTER * np.maximum(
+            share * exact, least
+        )
+        taken[name] = np.where(read < least, 0.0, read)
     write_samples(folder / "gas.csv", where, taken, day)
 
 
@@ -206,7 +215,7 @@ def main() -> None:
         lake = strata.load_lake(copy / "lake.toml")
     start = np.load(options.state) if options.state else None
     column = spin_up(lake, options.years, options.step_days, 0.005, start)
-    settle(column, 5, 1.0)  # the last years with the step of a projection
+    settle(column, 200, 1.0)  # the last years with the step of a projection
     if options.keep:
         np.save(options.keep, column.values)
     survey(column, options.out, lake.site.start.isoformat())

@@ -18,7 +18,7 @@ from strata.lake.site import Lake, Profile, Site
 from strata.species import SPECIES
 from strata.water import thermal_expansion
 from strata.water.density import gas_mass_and_volume, in_situ_temperature, parcel_density
-from strata.water.stability import standard_gravity
+from strata.water.stability import first_depth, standard_gravity
 
 Array = NDArray[np.float64]
 
@@ -27,9 +27,6 @@ NORMAL_MOLAR_VOLUME = GAS_CONSTANT * ZERO_CELSIUS / ATMOSPHERE
 #: Dissolved oxygen below which water no longer counts as oxic: 2 mg/L, the usual bound of
 #: hypoxia (Diaz & Rosenberg 2008, Science 321:926-929) [mol m-3].
 OXIC = 2.0 / 31.998
-#: Density above that at the surface at which a cast leaves its mixed layer
-#: (de Boyer Montegut et al. 2004, J. Geophys. Res. 109:C12003) [kg m-3].
-MIXED_LAYER_STEP = 0.03
 YEAR = np.timedelta64(365, "D")
 
 
@@ -266,37 +263,6 @@ def lifting_energy(
     points = np.concatenate(([end], inner, [start]))
     around = np.interp(points, depth, density)
     return float(gravity * np.trapezoid(around[-1] - around, points))
-
-
-def mixed_layer_depth(depth: Array, density: Array) -> Array:
-    """Return where potential density first exceeds that at the surface by a set step [m].
-
-    For a cast, which says nothing about mixing; a projection knows its own mixed layer.
-
-    Parameters
-    ----------
-    depth : ndarray, shape (layers,)
-    density : ndarray, shape (..., layers)
-        Potential density [kg m-3].
-    """
-    excess = density - density[..., :1]
-    return first_depth(depth, excess, MIXED_LAYER_STEP, rising=True)
-
-
-def first_depth(depth: Array, values: Array, bound: float, rising: bool) -> Array:
-    """Return the depth at which a profile first passes a bound [m]; the last one if never."""
-    signed = values - bound if rising else bound - values
-    past = signed > 0.0
-    index = np.argmax(past, axis=-1)
-    ever = np.any(past, axis=-1)
-    after = np.take_along_axis(signed, index[..., np.newaxis], axis=-1)[..., 0]
-    previous = np.maximum(index - 1, 0)
-    before = np.take_along_axis(signed, previous[..., np.newaxis], axis=-1)[..., 0]
-    step = np.where(index > 0, after - before, 1.0)
-    share = np.where(index > 0, -before / np.where(step == 0.0, 1.0, step), 0.0)
-    passed = depth[previous] + share * (depth[index] - depth[previous])
-    passed = np.where(index > 0, passed, 0.0)
-    return np.where(ever, passed, depth[-1])
 
 
 def of_the_year(

@@ -125,9 +125,7 @@ def project(
             f" up to {LONGEST:g} years in steps of up to 31 days are allowed"
         )
     fleet = Fleet(plan, lake)
-    all_tags = (*fleet.tags, *tags)
-    first = first_day(lake) if values is None else values
-    column = Column(lake, np.pad(first, ((0, 0), (0, len(all_tags)))), all_tags)
+    column = _column(lake, values, (*fleet.tags, *tags))
     begin = lake.site.start
     end = clock.add_years(begin, years)
     track = _Track()
@@ -135,7 +133,7 @@ def project(
     for number, span in enumerate(todo):
         try:
             if number == 0:
-                _first_note(track, column, fleet, span, begin)
+                _first_note(track, column, fleet, begin)
             carry_on(column, fleet, span, begin, step_days)
             if span.output:
                 track.note(span.end, column, fleet)
@@ -148,19 +146,32 @@ def project(
     return results.dataset(_record(track, column, fleet, options), lake, plan)
 
 
-def _first_note(track: _Track, column: Column, fleet: Fleet, span: clock.Span, begin: date) -> None:
+def today(lake: Lake) -> xr.Dataset:
+    """Return the column on the day of the casts: a result with one time."""
+    column, track, fleet = _column(lake, None, ()), _Track(), Fleet(None, lake)
+    _first_note(track, column, fleet, lake.site.start)
+    return results.dataset(_record(track, column, fleet, {}), lake, None)
+
+
+def _column(lake: Lake, values: Array | None, tags: Sequence[str]) -> Column:
+    """Return the column of a lake on its first day, its tags still without water."""
+    first = first_day(lake) if values is None else values
+    return Column(lake, np.pad(first, ((0, 0), (0, len(tags)))), tags)
+
+
+def _first_note(track: _Track, column: Column, fleet: Fleet, day: date) -> None:
     """Note the first day, with flows and diffusivities as the first visit finds them."""
     around = column.surroundings()
-    working = fleet.work(column, around, span.begin)
+    working = fleet.work(column, around, day)
     column.advance(
-        weather_of(column.lake.climate, span.begin, begin),
+        weather_of(column.lake.climate, day, day),
         working.takes,
         column.natural(around) + working.gives,
         0,
         clock.DAY,
         working.reference,
     )
-    track.note(span.begin, column, fleet)
+    track.note(day, column, fleet)
 
 
 def _record(

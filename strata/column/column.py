@@ -39,7 +39,7 @@ from strata.water.density import (
     potential_temperature,
     thermal_expansion,
 )
-from strata.water.stability import standard_gravity
+from strata.water.stability import mixed_layer_depth, standard_gravity
 from strata.water.transport import kinematic_viscosity, salt_diffusion, thermal_diffusivity
 
 Array = NDArray[np.float64]
@@ -98,7 +98,7 @@ class Column:
         self.state = kernel.State(
             values=values,
             hydrogen=self.hydrogen,
-            mixed_depth=np.array([self.basin.faces[1]]),
+            mixed_depth=np.array([self._first_mixed_depth(values)]),
             books=np.zeros((len(kernel.LEDGER_TERMS), len(self.tracers))),
             taken=np.zeros((0, len(self.tracers))),
         )
@@ -176,6 +176,20 @@ class Column:
             values, constants, self.hydrogen, self.molar_mass, self.molar_volume, mass, space
         )
         return mass, space
+
+    def _first_mixed_depth(self, values: Array) -> float:
+        """Return the depth of the mixed layer as the casts show it [m]."""
+        constants = self._carbonate_constants(values, self.pressure)
+        mass, space = self._gas_load(values, constants)
+        density = broadcast(parcel_density)(
+            values[:, TEMPERATURE],
+            values[:, SALINITY],
+            self.pressure[0],
+            mass,
+            space,
+            self.lake.site.haline_contraction,
+        )
+        return float(mixed_layer_depth(self.basin.depth, density))
 
     def _grid(self) -> kernel.Grid:
         """Return what never changes in a run, as the kernel wants it."""

@@ -22,7 +22,7 @@ from strata.compiled import broadcast
 from strata.gas import air
 from strata.gas.speciation import alkalinity_of, dic_of
 from strata.lake.basin import build_basin
-from strata.lake.casts import layer_means
+from strata.lake.casts import between_samples, layer_means
 from strata.lake.site import Lake, Site
 from strata.water.density import potential_temperature
 from strata.water.stability import standard_gravity
@@ -43,8 +43,14 @@ _SIMPLE = {
 def first_day(lake: Lake) -> Array:
     """Return the tracers of the layers on the day of the casts, (n, 10)."""
     basin = build_basin(lake.hypsography, lake.layer_faces)
+    profiles = lake.cast.profiles
+    salinity = profiles["salinity"]
     means = {
-        name: layer_means(profile, basin.faces) for name, profile in lake.cast.profiles.items()
+        name: layer_means(
+            profile if len(profile.depth) >= len(salinity.depth) else between_samples(profile, salinity),
+            basin.faces,
+        )
+        for name, profile in profiles.items()
     }
     return state_of(means, basin.depth, lake.site)
 

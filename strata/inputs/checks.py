@@ -17,10 +17,10 @@ from strata.errors import Fault, InputError
 from strata.inputs.casts import Origin
 from strata.lake.basin import build_basin
 from strata.lake.site import Lake, Profile, Site
-from strata.margins import mixed_layer_depth, water
+from strata.margins import water
 from strata.water.intrusion import SINK_COEFFICIENT, layer_shares
 from strata.water.salinity import salinity_from_conductivity
-from strata.water.stability import standard_gravity
+from strata.water.stability import mixed_layer_depth, standard_gravity
 
 Array = NDArray[np.float64]
 log = logging.getLogger(__name__)

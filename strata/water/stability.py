@@ -18,6 +18,10 @@ from strata.water.density import (
 
 Array = NDArray[np.float64]
 
+#: Density above that at the surface at which a cast leaves its mixed layer
+#: (de Boyer Montegut et al. 2004, J. Geophys. Res. 109:C12003) [kg m-3].
+MIXED_LAYER_STEP = 0.03
+
 
 def standard_gravity(latitude: float = 45.0) -> float:
     r"""Return gravity at sea level [m s-2] at a latitude in degrees [Moritz 1980].
@@ -95,3 +99,34 @@ def buoyancy_frequency_squared(
     step = np.diff(z, axis=-1)
     squared = gravity * (lower - upper) / (0.5 * (lower + upper) * step)
     return squared, 0.5 * (z[..., 1:] + z[..., :-1])
+
+
+def mixed_layer_depth(depth: Array, density: Array) -> Array:
+    """Return where potential density first exceeds that at the surface by a set step [m].
+
+    For a cast, which says nothing about mixing; a projection knows its own mixed layer.
+
+    Parameters
+    ----------
+    depth : ndarray, shape (layers,)
+    density : ndarray, shape (..., layers)
+        Potential density [kg m-3].
+    """
+    excess = density - density[..., :1]
+    return first_depth(depth, excess, MIXED_LAYER_STEP, rising=True)
+
+
+def first_depth(depth: Array, values: Array, bound: float, rising: bool) -> Array:
+    """Return the depth at which a profile first passes a bound [m]; the last one if never."""
+    signed = values - bound if rising else bound - values
+    past = signed > 0.0
+    index = np.argmax(past, axis=-1)
+    ever = np.any(past, axis=-1)
+    after = np.take_along_axis(signed, index[..., np.newaxis], axis=-1)[..., 0]
+    previous = np.maximum(index - 1, 0)
+    before = np.take_along_axis(signed, previous[..., np.newaxis], axis=-1)[..., 0]
+    step = np.where(index > 0, after - before, 1.0)
+    share = np.where(index > 0, -before / np.where(step == 0.0, 1.0, step), 0.0)
+    passed = depth[previous] + share * (depth[index] - depth[previous])
+    passed = np.where(index > 0, passed, 0.0)
+    return np.where(ever, passed, depth[-1])

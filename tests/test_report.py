@@ -20,6 +20,11 @@ from strata.report import figures, plot, tables
 from strata.report.dossier import dossier
 
 matplotlib.use("Agg")
+STREAMS = [
+    {"stream": "feed", "kind": "water", "flow_m3_s": 12.0, "pH": 6.153},
+    {"stream": "product", "kind": "gas", "flow_mol_s": 150.0, "CH4_share": 0.5305},
+    {"stream": "vent", "kind": "gas", "flow_mol_s": 0.0, "CH4_share": 0.0},
+]
 NAMES = ("lake left alone", "shallow return", "deep return <b>")
 
 
@@ -90,6 +95,7 @@ def page(runs, verdicts, limits, lake, sweep, tmp_path_factory):
         lake=lake,
         plans={name: synthetic.plan(name) for name in NAMES[1:]},
         separate={"shallow return": sweep},
+        streams={"shallow return, north": STREAMS},
         date=datetime.date(2030, 5, 17),
         command="strata compare lake.toml a.toml b.toml",
     )
@@ -324,6 +330,12 @@ def test_the_page_lists_inputs_ledger_and_command(page, runs, limits):
     assert "strata compare lake.toml a.toml b.toml" in page
     worst = max(tables.ledger_worst(run)[1] for run in runs.values())
     assert f"none above {worst:.1e}" in page
+
+
+def test_streams_are_tabled_and_empty_ones_left_out(page):
+    text = page[page.index("streams of water with today") :]
+    assert re.search(r">pH</th><td>1</td><td class=\"n\">6.15</td>", text)
+    assert re.search(r">CH4</th><td>1</td><td class=\"n\">0.5305</td></tr>", text)
 
 
 def test_sentences_follow_from_the_numbers(page, runs):

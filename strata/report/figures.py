@@ -294,12 +294,17 @@ def today(result: xr.Dataset, lake: Lake) -> Figure:
         ax.set_ylabel("")
     plot.gas_pressure(first, row[4])
     row[4].set_ylabel("")
-    row[4].legend(loc="upper right", fontsize="x-small")
     row[0].set_ylabel("depth [m]")
     for ax in row:
         for found in _main_extent(first):
             ax.axhspan(*found, color="0.85", zorder=0)
-    _legend(figure, row[2])
+    handles, labels = (
+        of_points + of_pressure
+        for of_points, of_pressure in zip(
+            row[2].get_legend_handles_labels(), row[4].get_legend_handles_labels(), strict=True
+        )
+    )
+    figure.legend(handles, labels, loc="upper left", ncols=7, bbox_to_anchor=(0.06, 1.0))
     return figure
 
 
@@ -323,5 +328,6 @@ def separator(sweep: xr.Dataset) -> Figure:
     )
     row[0].set_ylim(0.0, 1.02)
     row[1].set_ylim(0.0, 1.02)
+    row[2].margins(y=0.15)
     _legend(figure, row[0])
     return figure

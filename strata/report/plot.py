@@ -16,6 +16,7 @@ import numpy as np
 import xarray as xr
 from matplotlib.artist import Artist
 from matplotlib.axes import Axes
+from matplotlib.ticker import FuncFormatter
 from numpy.typing import NDArray
 
 from strata.lake.site import Profile
@@ -514,12 +515,13 @@ def separator_sweep(
                 ax.annotate(
                     f"best at {pressure[best]:.2g} bar",
                     (pressure[best], values[best]),
-                    xytext=(6, 6),
+                    xytext=(4, 7 if number == 0 else -14),
                     textcoords="offset points",
                     fontsize="small",
                 )
             )
     ax.set_xscale("log")
+    ax.xaxis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
     ax.set_xlabel("separator pressure [bar]")
     ax.set_ylabel(label or sweep[variable].attrs.get("long_name", variable))
     return artists

@@ -39,10 +39,10 @@ from strata.water.intrusion import INTRUSION_COEFFICIENT, layer_shares
 ENTRAINMENT_COEFFICIENT = 0.093 * math.sqrt(2.0)
 LEAST_FREQUENCY = 1e-4  # s-1, stratification that ends a jet in perfectly mixed water
 IDLE = 0.05  # of the momentum per 1 / N: a force that leaves a jet as it is
-GROWTH_PER_STEP = 0.08  # of the flow
-FALL_PER_STEP = 0.15  # of the buoyant time (b / g')^(1/2)
-PHASE_PER_STEP = 0.08  # of 1 / N
-DEPTH_PER_STEP = 1.0  # m
+GROWTH_PER_STEP = 0.15  # of the flow
+FALL_PER_STEP = 0.3  # of the buoyant time (b / g')^(1/2)
+PHASE_PER_STEP = 0.15  # of 1 / N
+DEPTH_PER_STEP = 2.0  # m
 MOST_STEPS = 20_000
 
 
@@ -132,7 +132,11 @@ def _stability(face_depth, lake, haline_contraction, gravity):
             lake[0][i], lake[1][i], p, lake[2][i], lake[3][i], haline_contraction
         )
         lower = parcel_density(
-            lake[0][i + 1], lake[1][i + 1], p, lake[2][i + 1], lake[3][i + 1],
+            lake[0][i + 1],
+            lake[1][i + 1],
+            p,
+            lake[2][i + 1],
+            lake[3][i + 1],
             haline_contraction,
         )
         apart = 0.5 * (face_depth[i + 2] - face_depth[i])
@@ -153,9 +157,7 @@ def _neutral_depth(face_depth, lake, water, depth, haline_contraction):
     while 0 <= k < n:
         there = 0.5 * (face_depth[k] + face_depth[k + 1])
         if (there > here) == downward and there != here:
-            next_excess = _heaviness(
-                face_depth, lake, water, there, k, haline_contraction
-            )[0]
+            next_excess = _heaviness(face_depth, lake, water, there, k, haline_contraction)[0]
             if (next_excess > 0.0) != downward:
                 return here + (there - here) * excess / (excess - next_excess)
             here = there
@@ -165,12 +167,12 @@ def _neutral_depth(face_depth, lake, water, depth, haline_contraction):
 
 
 @compiled
-def _rates(face_depth, lake, depth, flow, across, down, content, row, haline_contraction,
-hint):
+def _rates(place, depth, flow, down, content, hint):
     """Return how fast a plume changes, and what it meets.
 
-    ``content`` is flow times (theta, salinity, gas mass, gas volume); ``row`` is (ports,
-    length of the row, entrainment coefficient, gravity).
+    ``place`` is (face depths, lake, haline contraction, row); row is (ports, length of the
+    row, entrainment coefficient, gravity, level momentum); ``content`` is flow times (theta,
+    salinity, gas mass, gas volume).
 
     Returns
     -------
@@ -178,14 +180,38 @@ hint):
         Rate of taking in [m3 s-2], force [m4 s-3], half-width [m], ambient theta, salinity,
         gas mass, gas volume, segment.
     """
+    face_depth, lake, haline_contraction, row = place
     water = (content[0] / flow, content[1] / flow, content[2] / flow, content[3] / flow)
     excess, theta, salt, mass, volume, i = _heaviness(
         face_depth, lake, water, depth, hint, haline_contraction
     )
-    speed = max(math.sqrt(across * across + down * down) / flow, 1e-9)
+    speed = max(math.sqrt(row[4] * row[4] + down * down) / flow, 1e-9)
     perimeter, width = _cross_section(flow, speed, row[0], row[1])
     taking = row[2] * perimeter * speed * speed
     return taking, flow * row[3] * excess, width, theta, salt, mass, volume, i
+
+
+@compiled
+def _half_way(place, depth, flow, down, content, first, half):
+    """Return the rates half a time step ahead, and flow and downward momentum there."""
+    taken = half * first[0]
+    middle_flow = flow + taken
+    middle_down = down + half * first[1]
+    mixed = _mixed(content, taken, first[3], first[4], first[5], first[6])
+    middle_depth = depth + half * down / flow
+    second = _rates(place, middle_depth, middle_flow, middle_down, mixed, first[7])
+    return second, middle_flow, middle_down
+
+
+@compiled
+def _up_to_the_ends(face_depth, depth, fall, share):
+    """Return the share of a step that stays within the faces, and the code of what it meets."""
+    top, foot = face_depth[0], face_depth[-1]
+    if depth + share * fall < top:
+        return min(share, max((top - depth) / fall, 0.0)) if fall < 0.0 else 0.0, 1
+    if depth + share * fall > foot:
+        return min(share, max((foot - depth) / fall, 0.0)) if fall > 0.0 else 0.0, 2
+    return share, -1
 
 
 @compiled
@@ -212,11 +238,11 @@ def _mixed(content, taken, theta, salt, mass, volume):
 
 
 @compiled
-def _turns_for_good(face_depth, lake, content, flow, source_depth, pull, haline_contraction):
-    """Return whether a jet against its own weight stays on its side of the port."""
+def _falls_past(place, content, flow, source_depth, pull):
+    """Return whether a jet that its own weight has turned goes on past its port."""
     water = (content[0] / flow, content[1] / flow, content[2] / flow, content[3] / flow)
-    excess = _heaviness(face_depth, lake, water, source_depth, 0, haline_contraction)[0]
-    return excess * pull <= 0.0
+    excess = _heaviness(place[0], place[1], water, source_depth, 0, place[2])[0]
+    return excess * pull > 0.0
 
 
 @compiled
@@ -235,10 +261,17 @@ def _interface_share(work, work_width, opposing, coefficient):
 
 
 @compiled
-def _climb(
-    face_depth, stability, lake, water, haline_contraction, row,
-    depth, flow, port_area, port_angle, overshoot_coefficient, entrained,
-):
+def _beyond(struck, opposing, flow, coefficient):
+    """Return what an overshoot takes in beyond what its sides did; see the head of the module.
+
+    ``struck`` is (flow, depth, work, work times width) since weight turned against the plume.
+    """
+    share = _interface_share(struck[2], struck[3], opposing, coefficient)
+    return max(struck[0] * share - (flow - struck[0]), 0.0)
+
+
+@compiled
+def _climb(place, stability, water, depth, flow, down, overshoot_coefficient, entrained):
     """Follow a plume to its end, filling ``entrained``; see :func:`follow_plume`.
 
     Returns
@@ -246,98 +279,61 @@ def _climb(
     tuple
         Furthest depth [m], number of separate plumes that spread, code.
     """
-    n = len(face_depth) - 1
-    momentum = flow * flow / port_area
-    across = momentum * math.cos(port_angle)
-    down = -momentum * math.sin(port_angle)
-    if abs(across) < 1e-9 * momentum:
-        across = 0.0
+    face_depth, row = place[0], place[3]
+    source_depth, pull, phase, separate = depth, 0.0, 0.0, row[0]
     content = (flow * water[0], flow * water[1], flow * water[2], flow * water[3])
-    source_depth = depth
-    pull = 0.0  # the weight at the port, where a jet has to be turned first
-    phase = 0.0
-    struck, struck_depth, work, work_width = 0.0, depth, 0.0, 0.0
-    separate = row[0]
-    code = -1
-    hint = 0
+    struck = (flow, depth, 0.0, 0.0)
+    hint, code = 0, -1
     for count in range(MOST_STEPS):
-        first = _rates(
-            face_depth, lake, depth, flow, across, down, content, row, haline_contraction, hint
-        )
+        first = _rates(place, depth, flow, down, content, hint)
         hint = first[7]
         if count == 0 and down * first[1] < 0.0:
-            pull = first[1]
+            pull = first[1]  # the weight that has to turn the jet first
         square = stability[hint] if len(stability) > 0 else 0.0
         frequency = math.sqrt(max(square, LEAST_FREQUENCY * LEAST_FREQUENCY))
         step = _step_length(first[0], first[1], flow, down, first[2], frequency)
         level = abs(depth - source_depth) <= 0.01 * first[2]
         if level:
             step = min(step, max(math.pi - phase, 0.0) / frequency + 1e-6)
-        half = 0.5 * step
-        taken = half * first[0]
-        middle_flow = flow + taken
-        middle_down = down + half * first[1]
-        middle_depth = depth + half * down / flow
-        second = _rates(
-            face_depth, lake, middle_depth, middle_flow, across, middle_down,
-            _mixed(content, taken, first[3], first[4], first[5], first[6]),
-            row, haline_contraction, hint,
+        second, middle_flow, middle_down = _half_way(
+            place, depth, flow, down, content, first, 0.5 * step
         )
         fall = step * middle_down / middle_flow
-        share = 1.0
         turning = down * (down + step * second[1]) < 0.0
-        if turning:
-            share = -down / (step * second[1])
-        if depth + share * fall < face_depth[0]:
-            share = min(share, max((face_depth[0] - depth) / fall, 0.0)) if fall < 0.0 else 0.0
-            code = 1
-        elif depth + share * fall > face_depth[n]:
-            share = min(share, max((face_depth[n] - depth) / fall, 0.0)) if fall > 0.0 else 0.0
-            code = 2
-        taken = share * step * second[0]
+        share = -down / (step * second[1]) if turning else 1.0
+        share, code = _up_to_the_ends(face_depth, depth, fall, share)
         here = depth
+        taken = share * step * second[0]
         depth += share * fall
         flow += taken
         content = _mixed(content, taken, second[3], second[4], second[5], second[6])
-        speed = math.sqrt(across * across + middle_down * middle_down)
-        reach = second[2] * across / speed if speed > 0.0 else 0.0
-        _take_in(
-            face_depth, entrained, min(here, depth) - reach, max(here, depth) + reach, taken,
-            hint
-        )
+        down = 0.0 if turning else down + share * step * second[1]
+        phase += share * step * frequency
+        speed = max(math.sqrt(row[4] * row[4] + middle_down * middle_down), 1e-30)
+        reach = second[2] * row[4] / speed
+        upper, lower = min(here, depth) - reach, max(here, depth) + reach
+        _take_in(face_depth, entrained, upper, lower, taken, hint)
         if second[1] * middle_down >= 0.0 or pull != 0.0:
-            struck, struck_depth, work, work_width = flow, depth, 0.0, 0.0
-            area = middle_flow * middle_flow / max(speed, 1e-12)
+            struck = (flow, depth, 0.0, 0.0)
+            area = middle_flow * middle_flow / speed
             separate = min(row[0], 1.0 + row[1] * row[1] / (math.pi * area))
         else:
             lost = abs(second[1]) / middle_flow * abs(share * fall)
-            work += lost
-            work_width += lost * second[2]
-        down += share * step * second[1]
-        phase += share * step * frequency
+            struck = (struck[0], struck[1], struck[2] + lost, struck[3] + lost * second[2])
         if code > 0:
-            depth = face_depth[0] if code == 1 else face_depth[n]
-            break
-        if turning:
-            down = 0.0
-            if pull == 0.0 or _turns_for_good(
-                face_depth, lake, content, flow, source_depth, pull, haline_contraction
-            ):
-                code = 0
-                break
+            return face_depth[0] if code == 1 else face_depth[-1], separate, code
+        if turning and pull != 0.0 and _falls_past(place, content, flow, source_depth, pull):
             pull = 0.0
+        elif turning:
+            code = 0
+            break
         idle = frequency <= LEAST_FREQUENCY and abs(second[1]) < IDLE * frequency * speed
         if phase >= math.pi and (level or idle):
             code = 0
             break
-    opposing = abs(second[1]) / flow
-    extra = struck * _interface_share(work, work_width, opposing, overshoot_coefficient)
-    extra -= flow - struck  # what the sides took in on the way is part of it
-    if code == 0 and extra > 0.0:
-        _take_in(
-            face_depth, entrained, min(struck_depth, depth), max(struck_depth, depth), extra,
-            hint
-        )
+    extra = _beyond(struck, abs(second[1]) / flow, flow, overshoot_coefficient)
+    upper, lower = min(struck[1], depth), max(struck[1], depth)
+    _take_in(face_depth, entrained, upper, lower, extra, hint)
     return depth, separate, code
 
 
@@ -358,10 +354,26 @@ def _mixture(lake, water, flow, entrained):
 
 @compiled
 def follow_plume(
-    face_depth, theta, salinity, gas_mass, gas_volume, pressure, haline_contraction, gravity,
-    depth, flow, theta0, salinity0, gas_mass0, gas_volume0,
-    ports, port_diameter, port_spacing, overshoot_coefficient,
-    port_angle=0.0, entrainment_coefficient=ENTRAINMENT_COEFFICIENT,
+    face_depth,
+    theta,
+    salinity,
+    gas_mass,
+    gas_volume,
+    pressure,
+    haline_contraction,
+    gravity,
+    depth,
+    flow,
+    theta0,
+    salinity0,
+    gas_mass0,
+    gas_volume0,
+    ports,
+    port_diameter,
+    port_spacing,
+    overshoot_coefficient,
+    port_angle=0.0,
+    entrainment_coefficient=ENTRAINMENT_COEFFICIENT,
 ):
     """Follow water from its ports to where it comes to rest and spreads.
 
@@ -408,11 +420,20 @@ def follow_plume(
     stability = _stability(face_depth, lake, haline_contraction, gravity)
     entrained = np.zeros(n)
     ports = float(ports)
-    row = (ports, (ports - 1.0) * port_spacing, entrainment_coefficient, gravity)
-    port_area = ports * 0.25 * math.pi * port_diameter * port_diameter
+    momentum = flow * flow / (ports * 0.25 * math.pi * port_diameter * port_diameter)
+    across = momentum * math.cos(port_angle)
+    if abs(across) < 1e-9 * momentum:
+        across = 0.0
+    row = (ports, (ports - 1.0) * port_spacing, entrainment_coefficient, gravity, across)
     end_depth, separate, code = _climb(
-        face_depth, stability, lake, water, haline_contraction, row,
-        depth, flow, port_area, port_angle, overshoot_coefficient, entrained,
+        (face_depth, lake, haline_contraction, row),
+        stability,
+        water,
+        depth,
+        flow,
+        -momentum * math.sin(port_angle),
+        overshoot_coefficient,
+        entrained,
     )
     mixture, total = _mixture(lake, water, flow, entrained)
     trap_depth = _neutral_depth(face_depth, lake, mixture, end_depth, haline_contraction)

@@ -45,7 +45,7 @@ _ENGINE_TABLE = "Parkhurst & Appelo 2013, fitted over 5-30 degC"
 SPECIES: dict[str, Species] = {
     "CH4": Species(
         molar_mass=16.0425e-3,
-        molar_volume=35.7e-6,
+        molar_volume=35.3e-6,
         critical_temperature=190.56,
         critical_pressure=4.599e6,
         acentric_factor=0.011,

@@ -81,8 +81,8 @@ def saturated_vapour_ln_phi(t, rows, roots):
 
 
 @compiled
-def _bubble(t, s, alk, c, rows, pairs, laws, y, henry, reference, roots, work, ln_phi):
-    """Fill y; return the bubble pressure [Pa] and a code (0 done)."""
+def bubble_of(t, s, alk, c, rows, pairs, laws, y, henry, reference, roots, work, ln_phi):
+    """Fill y; return the bubble pressure [Pa] and a code; the last five are scratch."""
     n = rows.shape[0] - 1
     rt = GAS_CONSTANT * (t + ZERO_CELSIUS)
     liquid_side(t, s, alk, c, rows, laws, henry, reference)
@@ -164,7 +164,7 @@ def bubble_rows(t, s, c, rows, pairs, laws, pressure, y, code):
     henry, reference = np.empty(m), np.empty(m)
     roots, work, ln_phi = np.empty(m), np.empty(m), np.empty(m)
     for k in range(t.size):
-        pressure[k], code[k] = _bubble(
+        pressure[k], code[k] = bubble_of(
             t[k],
             s[k],
             0.0,

@@ -112,6 +112,21 @@ def ln_activity_of_co2(t, ionic_strength):
 
 
 @compiled
+def dilute_constants(t, p):
+    """Return ln K1, ln K2 and ln Kw without ions [mol/kg]."""
+    return ln_first_constant(t, p), ln_second_constant(t, p), ln_water_constant(t, p)
+
+
+@compiled
+def with_activities(dilute, ln_one, ln_co2, water):
+    """Return k1, k2, kw of dilute constants, activities and kg of water per m3."""
+    k1 = water * math.exp(dilute[0] + ln_co2 - 2.0 * ln_one)
+    k2 = water * math.exp(dilute[1] - 4.0 * ln_one)
+    kw = water * water * math.exp(dilute[2] - 2.0 * ln_one)
+    return k1, k2, kw
+
+
+@compiled
 def carbonate_constants(t, ionic_strength, p):
     """Return k1, k2 [mol m-3] and kw [mol2 m-6] for concentrations: activities are folded in.
 
@@ -125,12 +140,8 @@ def carbonate_constants(t, ionic_strength, p):
         Absolute [Pa].
     """
     ln_one = ln_activity_of_one(t, ionic_strength)
-    water = pure_water_density(t, p)
     ln_co2 = ln_activity_of_co2(t, ionic_strength)
-    k1 = water * math.exp(ln_first_constant(t, p) + ln_co2 - 2.0 * ln_one)
-    k2 = water * math.exp(ln_second_constant(t, p) - 4.0 * ln_one)
-    kw = water * water * math.exp(ln_water_constant(t, p) - 2.0 * ln_one)
-    return k1, k2, kw
+    return with_activities(dilute_constants(t, p), ln_one, ln_co2, pure_water_density(t, p))
 
 
 @compiled

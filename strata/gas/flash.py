@@ -19,6 +19,7 @@ from strata.gas.bubble import (
     CONDENSED,
     HIGHEST_PRESSURE,
     NOT_CONVERGED,
+    bubble_of,
     checked_gases,
     liquid_side,
     saturated_vapour_ln_phi,
@@ -63,6 +64,7 @@ def _gas_amount(c, share, vapour, carbon, alk, k1, k2, kw, y):
     """
     n = c.size
     low, high = 0.0, math.inf
+    feed = np.sum(c)
     gas = 0.0
     h = 1e-4
     for step in range(_STEPS):
@@ -91,7 +93,7 @@ def _gas_amount(c, share, vapour, carbon, alk, k1, k2, kw, y):
         new = gas - f / slope
         if not (low <= new <= high):
             new = 0.5 * (low + high) if high < math.inf else 2.0 * low + 1e-12
-        if abs(new - gas) <= 1e-15 * new:
+        if abs(new - gas) <= 1e-14 * (new + feed):
             return new
         gas = new
     return gas
@@ -105,9 +107,16 @@ def _flash(t, s, alk, c, p, carbon, rows, pairs, laws, y, work):
     rt = GAS_CONSTANT * (t + ZERO_CELSIUS)
     k1, k2, kw = 0.0, 0.0, 0.0
     free[:n] = c
+    feed = np.sum(c)
     if carbon >= 0:
         k1, k2, kw = carbonate_constants(t, ionic_strength_of(s, alk, 0.0, 0.0), p)
         free[carbon], _ = free_co2(c[carbon], alk, k1, k2, kw, 1e-4)
+    bubble, code = bubble_of(
+        t, s, alk, free[:n], rows, pairs, laws, y, henry, reference, roots, scratch, ln_phi
+    )
+    if code == 0 and p >= bubble:
+        y[:] = 0.0
+        return 0.0, 0
     liquid_side(t, s, alk, free[:n], rows, laws, henry, reference)
     real = laws[at.REAL_GAS] != 0.0
     if real:
@@ -117,19 +126,24 @@ def _flash(t, s, alk, c, p, carbon, rows, pairs, laws, y, work):
     for i in range(n):
         henry[i] *= math.exp(rows[i, at.VOLUME] * (p - reference[i]) * exponent)
     henry[n] *= math.exp(water_volume(t) * (p - reference[n]) * exponent)
-    ln_phi[:] = 0.0
     z = 1.0
+    ln_phi[:] = 0.0
+    if real and code == 0:
+        z = fugacity_rows(t, p, y, rows, roots, pairs, scratch, ln_phi)
     before = -1.0
     gas = 0.0
     for _ in range(_ROUNDS):
         for i in range(n):
             share[i] = henry[i] * math.exp(-ln_phi[i]) / p
         vapour = henry[n] * math.exp(-ln_phi[n]) / p
+        if z < LEAST_GAS_ROOT:
+            return 0.0, CONDENSED
         if vapour >= 1.0:
             return 0.0, BOILS
         gas = _gas_amount(c, share[:n], vapour, carbon, alk, k1, k2, kw, y)
-        if not real or abs(gas - before) <= 1e-13 * gas:
-            return gas, 0 if z > LEAST_GAS_ROOT else CONDENSED
+        settled = abs(gas - before) <= 1e-13 * (gas + feed)
+        if not real or (settled and gas > 0.0):
+            return gas, 0
         before = gas
         total = 0.0
         for i in range(n + 1):
@@ -137,7 +151,7 @@ def _flash(t, s, alk, c, p, carbon, rows, pairs, laws, y, work):
         for i in range(n + 1):
             y[i] /= total
         z = fugacity_rows(t, p, y, rows, roots, pairs, scratch, ln_phi)
-    return gas, NOT_CONVERGED
+    return gas, NOT_CONVERGED if gas > 0.0 else 0
 
 
 @compiled

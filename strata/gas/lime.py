@@ -15,7 +15,7 @@ from strata.constants import ATMOSPHERE
 from strata.errors import ComputationError
 from strata.gas import speciation as at
 from strata.gas.ions import equivalents_of
-from strata.gas.speciation import solve_carbonate
+from strata.gas.speciation import SETTLED, solve_carbonate
 
 Array = NDArray[np.float64]
 
@@ -64,7 +64,7 @@ def _dose_rows(t, s, p, dic, alk, dose, calcium, magnesium, approach, out, calci
                     high = solid
         calcite[i] = approach[i] * solid
         part = calcite[i]
-        rounds = solve_carbonate(
+        change = solve_carbonate(
             t[i],
             p[i],
             dic[i] - part,
@@ -76,7 +76,7 @@ def _dose_rows(t, s, p, dic, alk, dose, calcium, magnesium, approach, out, calci
             row[at.H],
             row,
         )
-        if rounds < 0 and bad < 0:
+        if not change < SETTLED and bad < 0:
             bad = i
     return bad
 

@@ -15,13 +15,15 @@ from strata.compiled import compiled
 from strata.constants import ATMOSPHERE, ZERO_CELSIUS
 from strata.errors import ComputationError, OutOfRangeError
 from strata.gas.carbonate import (
-    carbonate_constants,
+    dilute_constants,
     free_co2,
+    ln_activity_of_co2,
     ln_activity_of_one,
     ln_aragonite_product,
     ln_calcite_product,
     ln_second_constant,
     ln_sulfide_constant,
+    with_activities,
 )
 from strata.gas.ions import equivalents_of
 from strata.water.density import pure_water_density
@@ -30,6 +32,7 @@ Array = NDArray[np.float64]
 
 _LN10 = math.log(10.0)
 _ROUNDS = 300
+SETTLED = 1e-9  # relative change of ions and pairs in the last round
 _SOURCE = "carbonate constants, Plummer & Busenberg 1982"
 _DAVIES = "activities, Davies 1962"
 
@@ -58,14 +61,33 @@ def _pair_constants(t):
 
 
 @compiled
+def _sulfide_ion(dic, alk, k1, k2, kw, sulfide, split, h):
+    """Return HS- [mol m-3]: what of the sulfide the hydrogen ion leaves, by bisection."""
+    low, high = 0.0, sulfide
+    if split == 0.0:
+        return 0.0
+    for _ in range(_ROUNDS):
+        hs = 0.5 * (low + high)
+        if hs in (low, high):
+            break
+        _, h = free_co2(dic, alk - hs, k1, k2, kw, h)
+        if sulfide * split / (split + h) > hs:
+            low = hs
+        else:
+            high = hs
+    return 0.5 * (low + high)
+
+
+@compiled
 def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
     """Fill out with the species [mol m-3] of water of known DIC and alkalinity.
 
     mono is the sum of cations other than magnesium and calcium; anions other than those of
     alkalinity balance the charge.  Rounds of the plain solution with what pairs and activities
-    make of the constants.  Returns the number of rounds, negative where they did not settle.
+    make of the constants.  Returns the last relative change of ions and pairs.
     """
     water = pure_water_density(t, p)
+    dilute = dilute_constants(t, p)
     cations = mono + 2.0 * (magnesium + calcium)
     anions = max(0.0, cations - alk)
     free_mg, free_ca, hs = magnesium, calcium, 0.0
@@ -74,19 +96,24 @@ def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
     pairs = _pair_constants(t) if paired else (0.0, 0.0, 0.0, 0.0)
     ln_sulfide = ln_sulfide_constant(t, p) if sulfide > 0.0 else 0.0
     change = 1.0
-    for step in range(_ROUNDS):
+    for _ in range(_ROUNDS):
         ln_one = ln_activity_of_one(t, strength)
-        two = math.exp(4.0 * ln_one)
-        k1, k2, kw = carbonate_constants(t, strength, p)
+        two = math.exp(4.0 * ln_one) if paired else 1.0
+        k1, k2, kw = with_activities(dilute, ln_one, ln_activity_of_co2(t, strength), water)
         of_hco3 = 1.0
         of_co3 = 1.0
         if paired:
             of_hco3 += (pairs[0] * free_mg + pairs[2] * free_ca) * two / water
             of_co3 += (pairs[1] * free_mg + pairs[3] * free_ca) * two * two / water
-        co2, h = free_co2(dic, alk - hs, k1 * of_hco3, k2 * of_co3 / of_hco3, kw, h)
+        of_sulfide = 0.0
+        if sulfide > 0.0:
+            of_sulfide = water * math.exp(ln_sulfide - 2.0 * ln_one)
+        first, second = k1 * of_hco3, k2 * of_co3 / of_hco3
+        hs = _sulfide_ion(dic, alk, first, second, kw, sulfide, of_sulfide, h)
+        co2, h = free_co2(dic, alk - hs, first, second, kw, h)
         hco3 = k1 * co2 / h  # free of pairs
         co3 = k2 * hco3 / h
-        if step > 0 and change < 1e-12:
+        if change < 1e-11:
             break
         before = strength + free_mg + free_ca + hs
         if paired:
@@ -94,9 +121,6 @@ def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
                 1.0 + two / water * (pairs[0] * hco3 + pairs[1] * two * co3)
             )
             free_ca = calcium / (1.0 + two / water * (pairs[2] * hco3 + pairs[3] * two * co3))
-        if sulfide > 0.0:
-            split = water * math.exp(ln_sulfide - 2.0 * ln_one)
-            hs = sulfide * split / (split + h)
         single = mono + hco3 * of_hco3 + kw / h + h + hs + anions
         strength = 0.5e-3 * (single + 4.0 * (free_mg + free_ca + co3))
         change = abs(strength + free_mg + free_ca + hs - before) / (before + 1e-30)
@@ -117,9 +141,7 @@ def solve_carbonate(t, p, dic, alk, mono, magnesium, calcium, sulfide, h, out):
         ln_product = math.log(free_ca * co3 / (water * water)) + 8.0 * ln_one
         out[CALCITE] = (ln_product - ln_calcite_product(t, p)) / _LN10
         out[ARAGONITE] = (ln_product - ln_aragonite_product(t, p)) / _LN10
-    if change < 1e-9:
-        return step
-    return -1
+    return change
 
 
 @compiled
@@ -131,11 +153,11 @@ def _rows(t, s, p, dic, alk, magnesium, calcium, sulfide, out):
         mono = max(
             0.0, equivalents_of(s[i], alk[i], 0.0, 0.0) - 2.0 * (magnesium[i] + calcium[i])
         )
-        rounds = solve_carbonate(
+        change = solve_carbonate(
             t[i], p[i], dic[i], alk[i], mono, magnesium[i], calcium[i], sulfide[i], h, out[i]
         )
         h = out[i, H]
-        if rounds < 0 and bad < 0:
+        if not change < SETTLED and bad < 0:
             bad = i
     return bad
 

@@ -104,6 +104,8 @@ class SpringTable(WaterTable):
     depth_m: Depth
     flow_m3_s: Flow
     ports: Annotated[int, Between(1, 100_000)] | None = None
+    port_diameter_m: Annotated[float, Between(0.01, 100)] | None = None
+    port_spacing_m: Annotated[float, Between(0.1, 10_000)] | None = None
     spread_m: Annotated[list[Depth], Field(min_length=2, max_length=2)] | None = None
 
 
@@ -158,6 +160,9 @@ class MixingTable(Table):
     wind_efficiency: Annotated[float, Between(0, 10)] | None = None
     convection_efficiency: Share | None = None
     drag_coefficient: Annotated[float, Between(1e-4, 1e-2)] | None = None
+    overshoot: (
+        Annotated[float, Between(0, 3, why="1 is the laboratory's entrainment")] | None
+    ) = None
 
 
 class ZoneTable(Table):

@@ -14,6 +14,7 @@ from strata.compiled import broadcast
 from strata.constants import ATMOSPHERE, GAS_CONSTANT, ZERO_CELSIUS
 from strata.gas import bubble_point, speciate
 from strata.gas.air import argon_of_nitrogen
+from strata.gradients import REFERENCE_DENSITY
 from strata.lake.site import Lake, Profile, Site
 from strata.species import SPECIES
 from strata.water import thermal_expansion
@@ -245,24 +246,25 @@ def layer_centres(face_depth: Array, face_area: Array) -> Array:
     return np.asarray(face_depth[:-1] + share * np.diff(face_depth))
 
 
-def lifting_energy(
-    depth: Array, density: Array, start: float, end: float, gravity: float
-) -> float:
-    """Return the work that lifts water from one depth to another, unmixed [J m-3].
+def lifting_energy(depth: Array, stability: Array, start: float, end: float) -> float:
+    r"""Return the work that lifts water from one depth to another, unmixed [J m-3].
+
+    .. math:: W = \rho \int_{end}^{start} N^2\,(z - z_{end})\,dz
+
+    which is gravity times the excess of the parcel's density over that around it, summed over
+    the way, with compression taken out.
 
     Parameters
     ----------
-    depth, density : ndarray, shape (layers,)
-        Middle of the layers [m] and potential density [kg m-3].
+    depth, stability : ndarray
+        Depth [m] and buoyancy frequency squared there [s-2].
     start, end : float
         Depths [m]; end above start.
-    gravity : float
-        [m s-2].
     """
     inner = depth[(depth > end) & (depth < start)]
     points = np.concatenate(([end], inner, [start]))
-    around = np.interp(points, depth, density)
-    return float(gravity * np.trapezoid(around[-1] - around, points))
+    force = np.interp(points, depth, stability) * (points - end)
+    return float(REFERENCE_DENSITY * np.trapezoid(force, points))
 
 
 def of_the_year(

@@ -10,6 +10,7 @@ from strata import margins
 from strata.gas import bubble_point
 from strata.gas.air import argon_of_nitrogen
 from strata.water import buoyancy_frequency_squared
+from strata.water.stability import mixed_layer_depth
 
 DEPTH = np.arange(0.5, 400.0, 1.0)
 FACES = np.arange(0.0, 401.0, 1.0)
@@ -103,17 +104,24 @@ def test_zones_add_up_to_the_whole_whatever_their_bounds():
     np.testing.assert_allclose(sum(zones), margins.in_place(amount, volume), rtol=1e-13)
 
 
-def test_lifting_through_linear_stratification_costs_half_the_spring_constant():
+def test_lifting_through_linear_stratification_works_against_a_spring():
     # rho rises by 0.01 kg/m3 per m: work = g * 0.01 * 50^2 / 2
-    density = 1000.0 + 0.01 * DEPTH
-    assert margins.lifting_energy(DEPTH, density, 300.0, 250.0, 9.8) == pytest.approx(
+    stability = np.full(len(DEPTH), 9.8 * 0.01 / 1000.0)
+    assert margins.lifting_energy(DEPTH, stability, 300.0, 250.0) == pytest.approx(
         9.8 * 0.01 * 50.0**2 / 2.0, rel=1e-9
+    )
+
+
+def test_lifting_across_a_step_costs_its_weight_over_the_way_above_it():
+    stability = np.where(np.abs(DEPTH - 200.5) < 0.1, 9.8 * 1.2 / 1000.0, 0.0)  # 1.2 kg/m3
+    assert margins.lifting_energy(DEPTH, stability, 250.0, 150.0) == pytest.approx(
+        9.8 * 1.2 * 50.5, rel=1e-9
     )
 
 
 def test_mixed_layer_ends_where_density_has_risen_by_the_step():
     density = 998.0 + np.where(DEPTH > 40.0, 0.01 * (DEPTH - 40.0), 0.0)
-    assert margins.mixed_layer_depth(DEPTH, density) == pytest.approx(43.0, abs=0.02)
+    assert mixed_layer_depth(DEPTH, density) == pytest.approx(43.0, abs=0.02)
 
 
 def test_oxic_layer_ends_at_two_milligrams_a_litre():

@@ -226,6 +226,27 @@ def test_inspection_gives_gas_in_mol_tonnes_and_volume(runs):
     assert sum("main" in li.split()[:1] for li in text.splitlines()) == 1
 
 
+def test_inspection_gives_the_work_to_lift_the_worst_water_until_it_bubbles(runs):
+    now = runs[NAMES[0]].isel(time=0)
+    start = float(now["largest_saturation_depth"])
+    at = int(np.argmin(np.abs(now["depth"].values - start)))
+    end = start - float(now["lift_to_bubbling"][at])
+    # at least the step of the main gradient is lifted all the way from there to the end
+    above = 9.78 * float(now["gradient_strength"]) * (float(now["gradient_depth"]) - end)
+    work = tables.work_to_bubbling(now)
+    assert work > above > 0.0
+    assert f"{work:.0f}" in tables.inspect(runs[NAMES[0]])
+
+
+def test_a_run_of_one_year_makes_a_page(lake, limits, tmp_path):
+    short = results.dataset(synthetic.record(lake, years=1.0, plants=()), lake)
+    dossier(
+        {"alone": short}, {"alone": judge(short, limits, short)}, limits, tmp_path / "a.html"
+    )
+    text = (tmp_path / "a.html").read_text(encoding="utf-8")
+    assert text.count(">2030</th>") == text.count(">2031</th>") > 0
+
+
 def test_the_ledger_line_gives_the_worst_tracer(runs):
     run = runs[NAMES[0]]
     line = tables.ledger_line(run)

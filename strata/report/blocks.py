@@ -261,7 +261,8 @@ def chosen_years(result: xr.Dataset) -> list[float]:
     """Return the years after the start at which profiles and tables stand."""
     passed = calendar_years(result)
     length = float(passed[-1] - passed[0])
-    return [0.0, round(length / 5), round(length / 2), length]
+    years = (0.0, float(round(length / 5)), float(round(length / 2)), length)
+    return list(dict.fromkeys(years))
 
 
 def _by_year(

@@ -7,7 +7,7 @@ import xarray as xr
 
 from strata.gradients import Gradient, StabilityProfiles
 from strata.limits import BREACHED, KEPT, MILLION, UNCERTAIN, Verdict, VerdictRow
-from strata.margins import cubic_kilometres, tonnes
+from strata.margins import cubic_kilometres, lifting_energy, tonnes
 
 BAR = 1e5
 
@@ -184,6 +184,8 @@ def inspect(result: xr.Dataset) -> str:
         ("largest saturation", float(now["largest_saturation"]), 3, "1"),
         ("  at depth", float(now["largest_saturation_depth"]), 1, "m"),
         ("  standard error from the casts", _error_of_saturation(now), 3, "1"),
+        ("  rise until it bubbles", float(_of_worst(now)["lift_to_bubbling"]), 1, "m"),
+        ("  work of that rise, unmixed", work_to_bubbling(now), 0, "J/m3"),
         ("least pressure margin", float(now["least_pressure_margin"]) / BAR, 2, "bar"),
         ("  at depth", float(now["least_pressure_margin_depth"]), 1, "m"),
         ("least lift to bubbling", float(now["least_lift"]), 1, "m"),
@@ -206,8 +208,20 @@ def inspect(result: xr.Dataset) -> str:
 
 
 def _error_of_saturation(now: xr.Dataset) -> float:
-    at = np.argmin(np.abs(now["depth"].values - float(now["largest_saturation_depth"])))
-    return float(now["gas_pressure_error"][int(at)] * now["largest_saturation"])
+    return float(_of_worst(now)["gas_pressure_error"] * now["largest_saturation"])
+
+
+def _of_worst(now: xr.Dataset) -> xr.Dataset:
+    """Return the layer of the largest saturation."""
+    return now.sel(depth=float(now["largest_saturation_depth"]), method="nearest")
+
+
+def work_to_bubbling(now: xr.Dataset) -> float:
+    """Return the work that lifts the most saturated water until it bubbles [J m-3]."""
+    start = float(now["largest_saturation_depth"])
+    lift = float(_of_worst(now)["lift_to_bubbling"])
+    stability = now["buoyancy_frequency_squared"].values[1:-1].astype(float)
+    return lifting_energy(now["face"].values[1:-1], stability, start, start - lift)
 
 
 def inventory(now: xr.Dataset) -> str:

@@ -41,13 +41,13 @@ def within(
     """
     array = np.asarray(value, dtype=np.float64)
     low, high = allowed
-    bad = ~((array >= low) & (array <= high))
-    if np.any(bad):
-        worst = float(np.atleast_1d(array)[np.atleast_1d(bad)][0])
-        raise OutOfRangeError(
-            f"{name} is {worst:g} {unit}; {low:g} to {high:g} {unit} is allowed ({source})"
-        )
-    return array
+    good = (array >= low) & (array <= high)
+    if good.all():
+        return array
+    worst = float(np.atleast_1d(array)[~np.atleast_1d(good)][0])
+    raise OutOfRangeError(
+        f"{name} is {worst:g} {unit}; {low:g} to {high:g} {unit} is allowed ({source})"
+    )
 
 
 def named(what: str, name: object, known: Mapping[str, T]) -> T:

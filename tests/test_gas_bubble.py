@@ -189,3 +189,13 @@ def test_agrees_with_coolprop_on_fresh_mixtures():
         for i, name in enumerate(("CH4", "CO2")):
             theirs = state.fugacity_coefficient(i)
             assert float(phi[name]) == pytest.approx(theirs, rel=0.013)  # to 20 bar
+
+
+def test_the_kernel_is_compiled_once_for_all_callers():
+    from strata.gas.bubble import bubble_rows
+
+    for temperature in (20, 20.0, np.float32(20.0), np.linspace(10, 20, 9)[::2]):
+        gas.bubble_point(temperature, 1, {"CH4": np.arange(5)})
+    gas.bubble_point([[20.0], [21.0]], 1.0, {"CH4": [1.0, 2.0, 3.0]})
+    # run as plain Python, it has no signatures
+    assert len(getattr(bubble_rows, "signatures", [1])) == 1

@@ -168,6 +168,11 @@ def test_unsaturated_water_forms_no_calcite():
     assert water.calcite_saturation < 0
 
 
+def test_lime_beyond_the_activities_is_refused():
+    with pytest.raises(OutOfRangeError, match=r"ionic strength is .* Davies 1962"):
+        gas.dose_lime(22.0, 4.0, 20.0, 300.0, 300.0)
+
+
 def test_overdose_is_flagged_where_lime_exceeds_free_carbon_dioxide():
     free = float(gas.speciate(22.0, 4.0, 100.0, 45.0).co2)
     water = gas.dose_lime(22.0, 4.0, 100.0, 45.0, [0.9 * free, 1.1 * free])

@@ -20,7 +20,11 @@ from strata.gas import columns as at
 from strata.gas.henry import HIGHEST, henry_of_row, salting_out_of_row
 from strata.gas.laws import Laws, LawsLike
 from strata.gas.mixture import LEAST_GAS_ROOT, attraction_roots, fugacity_rows
-from strata.gas.solubility import SALINITY_RANGE, checked_temperature
+from strata.gas.solubility import (
+    SALINITY_RANGE,
+    checked_temperature,
+    lowest_temperature,
+)
 from strata.gas.table import gas_table
 from strata.species import VAPOUR
 from strata.water.density import TEMPERATURE_RANGE, pure_water_density
@@ -205,7 +209,8 @@ def checked_gases(
     )
     amounts = []
     for gas, value in dissolved.items():
-        checked_temperature(gas, t)
+        if lowest_temperature(gas) > TEMPERATURE_RANGE[0]:
+            checked_temperature(gas, t)
         source = "dilute solution"
         amounts.append(
             ranges.within(f"dissolved {gas}", value, (0.0, 3000.0), "mol/m3", source)

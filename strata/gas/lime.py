@@ -168,6 +168,7 @@ def dose_lime(
     bad = _dose_rows(*flat, out, calcite, free)
     if bad >= 0:
         raise ComputationError(f"lime: the ion pairs of row {bad} do not settle")
+    ranges.within("ionic strength", out[:, at.STRENGTH], (0.0, 0.5), "mol/L", davies)
     carbon, alk, lime, ca = flat[3], flat[4], flat[5], flat[6]
     return Limed(
         ph=out[:, at.PH].reshape(shape),

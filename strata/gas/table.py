@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -35,7 +36,7 @@ def _peng_robinson(temperature: float, pressure: float, factor: float) -> list[f
     return [root_a, alpha, temperature, 0.07779607 * GAS_CONSTANT * temperature / pressure]
 
 
-def _row(gas: str, row: Species) -> list[float]:
+def _row(row: Species) -> list[float]:
     """Return one gas as numbers."""
     values = [0.0] * at.WIDTH
     if row.henry is not None:
@@ -65,7 +66,12 @@ def gas_table(gases: Iterable[str], laws: Laws) -> GasTable:
         Corrections in force.
     """
     order = tuple(gases)
-    species = [ranges.named("gas", gas, SPECIES) for gas in order]
+    return _table(order, tuple(ranges.named("gas", gas, SPECIES) for gas in order), laws)
+
+
+@cache
+def _table(order: tuple[str, ...], species: tuple[Species, ...], laws: Laws) -> GasTable:
+    """Return the arrays; kept, because a plant asks for the same ones at every stage."""
     water = [0.0] * at.WIDTH
     water[at.ROOT_A :] = _peng_robinson(*WATER_CRITICAL)
     pairs = np.ones((len(order) + 1, len(order) + 1))
@@ -84,7 +90,4 @@ def gas_table(gases: Iterable[str], laws: Laws) -> GasTable:
     vector[at.PRESSURE_TERM] = laws.pressure_term
     vector[at.REAL_GAS] = laws.gas_phase == names.PENG_ROBINSON
     vector[at.WATER_VAPOUR] = laws.water_vapour
-    rows = np.array(
-        [_row(gas, row) for gas, row in zip(order, species, strict=True)] + [water]
-    )
-    return GasTable(order, rows, pairs, vector)
+    return GasTable(order, np.array([*map(_row, species), water]), pairs, vector)

@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 from strata.errors import ComputationError, OutOfRangeError
 from strata.plant import operate as plant_module
 from strata.plant.chemistry import density_of, free_gases, gas_load
-from strata.plant.operate import operate, outlets
+from strata.plant.operate import lift_of, operate, outlets
 from strata.plant.plan import Delivery, Lime, Return, Riser, Stage, Wash
 from strata.plant.streams import ELEMENTS, WaterStream, element_flows, imbalance, joined_water
 from strata.water import density
@@ -123,6 +123,15 @@ def test_a_riser_takes_over_the_pumping():
     lifted = operate(simple_plant(riser=Riser(0.8, 8)), DEEP, None, SITE)
     narrow = operate(simple_plant(riser=Riser(0.5, 8)), DEEP, None, SITE)
     assert lifted.power["pump"] < plain.power["pump"] < narrow.power["pump"]
+    with_pump = lift_of(simple_plant(riser=Riser(0.5, 8)), DEEP, SITE)
+    assert with_pump.flow == DEEP.flow
+    # a pump of 75 %, and nothing else is pumped: the last stage is above the air
+    assert narrow.power["pump"] == pytest.approx(
+        with_pump.pump_pressure * 12.0 / 0.75, rel=1e-9
+    )
+    alone = lift_of(simple_plant(Stage(1e5), riser=Riser(0.8, 8)), DEEP, SITE, demanded=False)
+    assert alone.flow == alone.self_lifted > 0.0
+    assert 0.0 < alone.bubble_depth < 345.0
 
 
 def test_the_temperature_change_of_a_return_is_added():

@@ -6,6 +6,7 @@ is added up and the balance of every element is struck over the whole plant.
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
+from typing import Any
 
 from strata.errors import ComputationError
 from strata.gas import bubble_point, speciate
@@ -14,7 +15,7 @@ from strata.plant import power
 from strata.plant.chemistry import density_of, free_gases, laws_of
 from strata.plant.lime import KILN_CARBON_DIOXIDE, LimedStream, add_lime
 from strata.plant.plan import Plant, Return
-from strata.plant.riser import pump_pressure
+from strata.plant.riser import RiserFlow, lift, pump_pressure
 from strata.plant.separator import run_train
 from strata.plant.streams import (
     NO_GAS,
@@ -27,6 +28,7 @@ from strata.plant.streams import (
 )
 from strata.plant.wash import wash_gas
 from strata.species import VAPOUR
+from strata.water.density import in_situ_temperature
 from strata.water.stability import standard_gravity
 
 #: Largest relative error in the balance of an element before a plant refuses to go on.
@@ -233,21 +235,52 @@ def _pumping(
 def _riser_pressure(plant: Plant, water: WaterStream, site: Site) -> float:
     """Return what the pumps of the risers must add [Pa]; negative is throttled away."""
     assert plant.riser is not None
-    gravity = standard_gravity(site.latitude)
-    foot = site.air_pressure + gravity * plant.intake_depth * density_of(
-        water, site, site.air_pressure + 0.5 * gravity * 1000.0 * plant.intake_depth
-    )
     return pump_pressure(
-        plant.riser,
+        plant.riser, *_in_riser(plant, water, site), water.flow, **_laws(site)
+    )
+
+
+def lift_of(plant: Plant, water: WaterStream, site: Site, demanded: bool = True) -> RiserFlow:
+    """Return how the risers of a plant work with the water they get.
+
+    Parameters
+    ----------
+    plant : Plant
+        With a riser.
+    water : WaterStream
+        After lime, if there is any.
+    site : Site
+    demanded : bool
+        Whether the flow is that of the stream; else it is the self-lifted one.
+    """
+    assert plant.riser is not None
+    flow = water.flow if demanded else None
+    return lift(plant.riser, *_in_riser(plant, water, site), flow, **_laws(site))
+
+
+def _laws(site: Site) -> dict[str, Any]:
+    """Return gravity and laws as the riser takes them."""
+    return {"gravity": standard_gravity(site.latitude), "laws": laws_of(site)}
+
+
+def _in_riser(
+    plant: Plant, water: WaterStream, site: Site
+) -> tuple[float, float, float, Mapping[str, float], float, float]:
+    """Return depth, temperature, salinity, free gases, outlet and foot pressure of a riser.
+
+    The lake above the intake weighs as much as the water of the intake, which is within 0.3 %.
+    """
+    gravity = standard_gravity(site.latitude)
+    middle = site.air_pressure + 500.0 * gravity * plant.intake_depth
+    weight = density_of(water, site, middle) * gravity
+    foot = site.air_pressure + weight * plant.intake_depth
+    return (
         plant.intake_depth,
-        water.temperature,
+        float(in_situ_temperature(water.temperature, middle)),
         water.salinity,
         free_gases(water, site, foot).gases,
         plant.stages[0].pressure,
         foot,
-        water.flow,
-        gravity=gravity,
-        laws=laws_of(site),
     )
 
 

@@ -178,18 +178,22 @@ def _train_of(
     laws: Laws | None,
 ) -> tuple[_Train, float]:
     """Return what comes out below the bubble point, and the bubble pressure."""
-    bubble = float(bubble_point(temperature, salinity, gases, laws).pressure)
+    first = bubble_point(temperature, salinity, gases, laws)
+    bubble = float(first.pressure)
     start = max(bubble, outlet * 1.0000001)
     pressure = np.geomspace(start, outlet, POINTS)
     parted = flash(temperature, salinity, gases, pressure, laws=laws)
     released = {**parted.released, VAPOUR: parted.vapour}
     moles = np.sum(list(released.values()), axis=0)
     some = moles > 0.0
+    # where nothing has come out yet the gas is that of the first bubble
     shares = {
-        gas: np.where(some, amount / np.where(some, moles, 1.0), 1.0 if gas == VAPOUR else 0.0)
+        gas: np.where(some, amount / np.where(some, moles, 1.0), first.composition[gas])
         for gas, amount in released.items()
     }
-    factor = compressibility_factor(temperature, pressure, shares, laws)
+    factor = np.ones(POINTS)
+    if bubble > outlet:
+        factor = compressibility_factor(temperature, pressure, shares, laws)
     mass = sum(
         share * (WATER_MASS if gas == VAPOUR else SPECIES[gas].molar_mass)
         for gas, share in shares.items()

@@ -42,7 +42,7 @@ IDLE = 0.05  # of the momentum per 1 / N: a force that leaves a jet as it is
 GROWTH_PER_STEP = 0.15  # of the flow
 FALL_PER_STEP = 0.3  # of the buoyant time (b / g')^(1/2)
 PHASE_PER_STEP = 0.15  # of 1 / N
-DEPTH_PER_STEP = 2.0  # m
+DEPTH_PER_STEP = 1.0  # m
 MOST_STEPS = 20_000
 
 
@@ -205,7 +205,7 @@ def _half_way(place, depth, flow, down, content, first, half):
 
 @compiled
 def _up_to_the_ends(face_depth, depth, fall, share):
-    """Return the share of a step that stays within the faces, and the code of what it meets."""
+    """Return the share of a step that stays within the faces, and what it meets (code)."""
     top, foot = face_depth[0], face_depth[-1]
     if depth + share * fall < top:
         return min(share, max((top - depth) / fall, 0.0)) if fall < 0.0 else 0.0, 1
@@ -307,13 +307,14 @@ def _climb(place, stability, water, depth, flow, down, overshoot_coefficient, en
         depth += share * fall
         flow += taken
         content = _mixed(content, taken, second[3], second[4], second[5], second[6])
+        gaining = second[1] * down >= 0.0
         down = 0.0 if turning else down + share * step * second[1]
         phase += share * step * frequency
         speed = max(math.sqrt(row[4] * row[4] + middle_down * middle_down), 1e-30)
         reach = second[2] * row[4] / speed
         upper, lower = min(here, depth) - reach, max(here, depth) + reach
         _take_in(face_depth, entrained, upper, lower, taken, hint)
-        if second[1] * middle_down >= 0.0 or pull != 0.0:
+        if gaining or pull != 0.0:
             struck = (flow, depth, 0.0, 0.0)
             area = middle_flow * middle_flow / speed
             separate = min(row[0], 1.0 + row[1] * row[1] / (math.pi * area))

@@ -254,7 +254,8 @@ def factors(
 ) -> tuple[Array, Array]:
     """Return the share of each tracer of a feed that goes back, and the amount added per second.
 
-    A share for dissolved gases and DIC where ``by_share``, an amount on top of all for the rest.
+    A share for dissolved gases and DIC where ``by_share`` or where some is taken out (an amount
+    could take more than the water of a later day holds), an amount on top of all for the rest.
     Tags of return water are given anew; other tags go along with the water.
     """
     link, added = np.ones(len(tracers)), np.zeros(len(tracers))
@@ -263,7 +264,7 @@ def factors(
             link[k], added[k] = 0.0, back.flow
         elif name in TRACERS:
             before, after = _value(feed, name), _value(back, name)
-            if by_share and name in _BY_SHARE and before > 0.0:
+            if name in _BY_SHARE and before > 0.0 and (by_share or after < before):
                 link[k] = after / before
             else:
                 added[k] = (after - before) * back.flow

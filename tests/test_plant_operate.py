@@ -8,8 +8,9 @@ from hypothesis import given as drawn
 from hypothesis import strategies as st
 
 from strata.errors import ComputationError, OutOfRangeError
+from strata.gas import bubble_point
 from strata.plant import operate as plant_module
-from strata.plant.chemistry import density_of, free_gases, gas_load
+from strata.plant.chemistry import density_of, free_gases, gas_load, gas_pressure
 from strata.plant.operate import lift_of, operate, outlets
 from strata.plant.plan import Delivery, Lime, Return, Riser, Stage, Wash
 from strata.plant.streams import ELEMENTS, WaterStream, element_flows, imbalance, joined_water
@@ -94,7 +95,15 @@ def test_gas_goes_where_its_stage_sends_it():
 
 def test_gas_put_back_too_high_up_is_warned_of():
     plant = replace(simple_plant(Stage(0.5e5, gas_to="return")), return_water=Return(30.0))
-    assert any("does not stay" in w for w in operate(plant, DEEP, None, SITE).warnings)
+    assert any(
+        "does not stay dissolved" in w for w in operate(plant, DEEP, None, SITE).warnings
+    )
+
+
+def test_the_gas_pressure_of_a_stream_is_its_bubble_point():
+    gases = free_gases(DEEP, SITE, 2e6).gases
+    expected = bubble_point(DEEP.temperature, DEEP.salinity, gases).pressure
+    assert gas_pressure(DEEP, SITE, 2e6) == pytest.approx(float(expected), rel=1e-12)
 
 
 def test_gas_of_a_vacuum_stage_is_brought_to_the_air_and_paid_for():

@@ -16,6 +16,7 @@ from strata.compiled import compiled
 from strata.constants import ATMOSPHERE, DRY_AIR, GAS_CONSTANT, ZERO_CELSIUS
 from strata.errors import ComputationError, OutOfRangeError
 from strata.gas import Laws, henry_constant
+from strata.gas.bubble import bubble_rows
 from strata.gas.carbonate import (
     carbonate_constants,
     free_co2,
@@ -131,6 +132,31 @@ def gas_load(water: WaterStream, site: Site, pressure: float) -> tuple[float, fl
         for gas, c in gases.items()
     )
     return mass, volume
+
+
+def gas_pressure(water: WaterStream, site: Site, pressure: float) -> float:
+    """Return the total gas pressure [Pa] of a stream whose CO2 is free as at a pressure.
+
+    Raises
+    ------
+    strata.ComputationError
+        If the bubble point is not found.
+    """
+    table = table_of(site)
+    free = free_gases(water, site, pressure).gases
+    c = np.array([[free[gas] for gas in LAKE_GASES]])
+    found, y, code = (
+        np.zeros(1),
+        np.zeros((1, len(LAKE_GASES) + 1)),
+        np.zeros(1, dtype=np.int64),
+    )
+    one = np.array([water.temperature]), np.array([water.salinity])
+    bubble_rows(*one, c, table.rows, table.pairs, table.laws, found, y, code)
+    if code[0] != 0:
+        raise ComputationError(
+            f"no bubble point of water of {water.temperature:.1f} degC found"
+        )
+    return float(found[0])
 
 
 def desorption_enthalpy(gas: str, temperature: float, site: Site) -> float:

@@ -9,10 +9,10 @@ from dataclasses import dataclass, field, replace
 from typing import Any
 
 from strata.errors import ComputationError
-from strata.gas import bubble_point, speciate
+from strata.gas import speciate
 from strata.lake.site import Site
 from strata.plant import power
-from strata.plant.chemistry import density_of, free_gases, laws_of
+from strata.plant.chemistry import density_of, free_gases, gas_pressure, laws_of
 from strata.plant.lime import KILN_CARBON_DIOXIDE, LimedStream, add_lime
 from strata.plant.plan import Plant, Return
 from strata.plant.riser import RiserFlow, lift, pump_pressure
@@ -98,7 +98,7 @@ def operate(
         washed_water, washed_gas = done.water, [done.gas]
     product = _delivered(plant, [*routed["product"], *washed_gas], site, used)
     vented = _brought_to(plant, routed["vent"], site.air_pressure, site, used)
-    back, water = _dissolved_again(plant, routed["return"], water, site, used)
+    water = _dissolved_again(plant, routed["return"], water, site, used)
     water = replace(
         water, temperature=water.temperature + plant.return_water.temperature_change
     )
@@ -126,19 +126,20 @@ def operate(
     if wash_feed is not None and washed_water is not None:
         streams |= {"wash water": wash_feed, "used wash water": washed_water}
     streams |= {"return water": water, "product": product, "vent": vented}
-    return Operation(
-        water,
-        washed_water,
-        product,
-        vented,
-        limed.lime,
-        limed.settled,
-        limed.lime * KILN_CARBON_DIOXIDE,
-        {**used, "electric": electric, "net": electric - used_sum},
-        balance,
-        _warnings(plant, limed, feed, water, back, site),
-        streams,
+    operation = Operation(
+        returned=water,
+        wash_returned=washed_water,
+        product=product,
+        vented=vented,
+        lime=limed.lime,
+        solids=limed.settled,
+        kiln_carbon_dioxide=limed.lime * KILN_CARBON_DIOXIDE,
+        power={**used, "electric": electric, "net": electric - used_sum},
+        balance=balance,
+        warnings=(),
+        streams=streams,
     )
+    return replace(operation, warnings=_warnings(plant, limed, feed, operation, site))
 
 
 def _brought_to(
@@ -186,22 +187,22 @@ def _dissolved_again(
     water: WaterStream,
     site: Site,
     used: dict[str, float],
-) -> tuple[bool, WaterStream]:
-    """Return whether gas put back into the return water stays in it, and the water."""
-    depth = plant.return_water.depth
-    pressure = site.air_pressure + 1000.0 * standard_gravity(site.latitude) * depth
-    gas = _brought_to(plant, gases, pressure, site, used) if gases else NO_GAS
+) -> WaterStream:
+    """Return the water with gas put back into it at the pressure of its outlet."""
+    gas = _brought_to(plant, gases, _pressure_at(plant.return_water, site), site, used)
     if gas.dry <= 0.0:
-        return True, water
+        return water
     added = {
         ("DIC" if name == "CO2" else name): flow / water.flow
         for name, flow in gas.flows.items()
         if name not in (VAPOUR, "Ar")
     }
-    fuller = water.changed(**{name: water.of(name) + x for name, x in added.items()})
-    held = free_gases(fuller, site, pressure).gases
-    needed = bubble_point(fuller.temperature, fuller.salinity, held, laws_of(site)).pressure
-    return bool(needed < pressure), fuller
+    return water.changed(**{name: water.of(name) + x for name, x in added.items()})
+
+
+def _pressure_at(outlet: Return, site: Site) -> float:
+    """Return the pressure [Pa] in fresh water at the depth of an outlet."""
+    return site.air_pressure + 1000.0 * standard_gravity(site.latitude) * outlet.depth
 
 
 def _pumping(
@@ -295,12 +296,7 @@ def _check(plant: Plant, balance: Mapping[str, float]) -> None:
 
 
 def _warnings(
-    plant: Plant,
-    limed: LimedStream,
-    feed: WaterStream,
-    water: WaterStream,
-    holds: bool,
-    site: Site,
+    plant: Plant, limed: LimedStream, feed: WaterStream, operation: Operation, site: Site
 ) -> tuple[str, ...]:
     """Return what a user should act on."""
     found = []
@@ -309,15 +305,19 @@ def _warnings(
             f"lime is over-dosed: {limed.lime / feed.flow:.1f} mol/m3 exceed the free CO2"
             f" of the feed; the limed water has pH {limed.ph:.1f}"
         )
-    scale = _calcite_saturation(water, site)
+    scale = _calcite_saturation(operation.returned, site)
     if scale > SCALING:
         found.append(
             f"return water is {10.0**scale:.0f} times saturated with calcite: it will scale"
         )
-    if not holds:
-        found.append(
-            f"gas sent to the return does not stay dissolved at {plant.return_water.depth:g} m"
-        )
+    for outlet, water in outlets(plant, operation):
+        around = _pressure_at(outlet, site)
+        inside = gas_pressure(water, site, around)
+        if inside > around:
+            found.append(
+                f"gas does not stay dissolved in the water returned at {outlet.depth:g} m:"
+                f" its pressure is {inside / 1e5:.1f} bar against {around / 1e5:.1f} bar there"
+            )
     return tuple(found)
 
 

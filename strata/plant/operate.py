@@ -4,7 +4,7 @@ The units are in the modules beside this one.  Here they are put in order, gas i
 is added up and the balance of every element is struck over the whole plant.
 """
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Any
 
@@ -119,13 +119,6 @@ def operate(
         ),
     )
     _check(plant, balance)
-    streams: dict[str, WaterStream | GasStream] = {"feed": feed}
-    if plant.lime is not None:
-        streams["limed feed"] = limed.water
-    streams |= {f"gas of stage {n}": gas for n, gas in enumerate(gases, 1)}
-    if wash_feed is not None and washed_water is not None:
-        streams |= {"wash water": wash_feed, "used wash water": washed_water}
-    streams |= {"return water": water, "product": product, "vent": vented}
     operation = Operation(
         returned=water,
         wash_returned=washed_water,
@@ -137,9 +130,31 @@ def operate(
         power={**used, "electric": electric, "net": electric - used_sum},
         balance=balance,
         warnings=(),
-        streams=streams,
+        streams=_streams(
+            feed, limed.water, gases, wash_feed, washed_water, water, product, vented
+        ),
     )
     return replace(operation, warnings=_warnings(plant, limed, feed, operation, site))
+
+
+def _streams(
+    feed: WaterStream,
+    limed: WaterStream,
+    gases: Sequence[GasStream],
+    wash_feed: WaterStream | None,
+    washed: WaterStream | None,
+    returned: WaterStream,
+    product: GasStream,
+    vented: GasStream,
+) -> dict[str, WaterStream | GasStream]:
+    """Return every stream by name, in the order of the process."""
+    named: dict[str, WaterStream | GasStream] = {"feed": feed}
+    if limed is not feed:
+        named["limed feed"] = limed
+    named |= {f"gas of stage {number}": gas for number, gas in enumerate(gases, 1)}
+    if wash_feed is not None and washed is not None:
+        named |= {"wash water": wash_feed, "used wash water": washed}
+    return named | {"return water": returned, "product": product, "vent": vented}
 
 
 def _brought_to(

@@ -23,7 +23,8 @@ ALLOWED = {
     "species": {"constants", "errors", "ranges"},
     "water": SMALL,
     "gas": SMALL | {"water"},
-    "lake": SMALL | {"water", "gas"},
+    "randomness": set(),
+    "lake": SMALL | {"water", "gas", "randomness"},
     "column": SMALL | {"water", "gas", "lake"},
     "plant": SMALL | {"water", "gas", "lake.site"},
     "gradients": SMALL | {"water"},
@@ -44,7 +45,7 @@ ALLOWED = {
     "coupling": SMALL | PHYSICS | {"clock"},
     "projection": SMALL | PHYSICS | {"clock", "coupling", "results"},
     "inputs": SMALL | PHYSICS | {"limits", "margins"},
-    "studies": SMALL | PHYSICS | DERIVED | {"projection"},
+    "studies": SMALL | PHYSICS | DERIVED | {"coupling", "projection"},
     "report": SMALL | PHYSICS | DERIVED | {"caution"},
     "cli": SMALL | DERIVED | {"caution", "inputs", "projection", "studies", "report"},
 }

@@ -1,17 +1,18 @@
-"""How the casts of the demo lake were made: its own supply, run to a steady state, then measured.
+"""How the casts of the demo lake were made: its supply, run to a steady state, then measured.
 
-Run from the checkout with ``python scripts/make_demo_lake.py``.  Starting from a rough guess, the
-lake of ``profiles/lake.toml`` is left alone for thousands of years under its own climate, springs
-and bed, until no tracer anywhere drifts by more than a small share of its range in a century.  A
-survey is then drawn from that state as an instrument would see it: a CTD at 1 m and water samples
-at some twenty depths, each with its noise.  Nothing in a projection pulls the lake back to these
-casts.
+Run from the checkout with ``python scripts/make_demo_lake.py``.  Starting from a rough guess,
+the lake of ``profiles/lake.toml`` is left alone for thousands of years under its own climate,
+springs and bed, until no tracer anywhere drifts by more than a small share of its range in a
+century.  A survey is then drawn from that state as an instrument would see it: a CTD at 1 m
+and water samples at some twenty depths, each with its noise.  Nothing in a projection pulls
+the lake back to these casts.
 """
 
 import argparse
 import shutil
 import tempfile
 from datetime import date
+from itertools import pairwise
 from pathlib import Path
 
 import numpy as np
@@ -55,13 +56,19 @@ SAMPLE_ERROR = {
 #: Most of a stated error is calibration, common to all depths; the rest differs by sample.
 CALIBRATION, SCATTER = 0.8, 0.15
 #: Errors of the probe, as the lake file states them.
-TEMPERATURE_ERROR, CONDUCTIVITY_ERROR, OXYGEN_ERROR = 0.003, 0.003, 0.003  # degC, mS/cm, mol/m3
+TEMPERATURE_ERROR, CONDUCTIVITY_ERROR, OXYGEN_ERROR = (
+    0.003,
+    0.003,
+    0.003,
+)  # degC, mS/cm, mol/m3
 FACTOR = 0.80  # g/kg per mS/cm at 25 degC, as the lake file states
 
 
 def write_ctd(path: Path, depth, temperature, salinity, oxygen, day: str, rng=None) -> None:
     """Write a CTD cast, with the noise of the instrument where a generator is given."""
-    conductivity = salinity / salinity_from_conductivity(np.ones_like(depth), temperature, FACTOR)
+    conductivity = salinity / salinity_from_conductivity(
+        np.ones_like(depth), temperature, FACTOR
+    )
     if rng is not None:
         temperature = temperature + rng.normal(0, TEMPERATURE_ERROR, len(depth))
         conductivity = conductivity + rng.normal(0, CONDUCTIVITY_ERROR, len(depth))
@@ -109,10 +116,10 @@ def write_guess(folder: Path, day: str) -> None:
         share = 0.5 * (1 + np.tanh((depth - foot) / 4.0))
         profile += share[:, None] * (table[upper + 1] - table[upper])
     write_ctd(folder / "ctd.csv", depth, *profile[:, :3].T, day)
-    at = np.unique(np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 396])
-    samples = {
-        name: np.interp(at, depth, profile[:, 3 + k]) for k, name in enumerate(SAMPLES)
-    }
+    at = np.unique(
+        np.r_[0.0, np.clip(np.r_[feet[:-1] - 8, feet[:-1], feet[:-1] + 8], 0, 400), 396]
+    )
+    samples = {name: np.interp(at, depth, profile[:, 3 + k]) for k, name in enumerate(SAMPLES)}
     write_samples(folder / "gas.csv", at, samples, day)
 
 
@@ -160,7 +167,7 @@ def sample_depths(column: Column) -> np.ndarray:
         edges += [top, foot]
         wanted += [top - 2, z[peak] - 2, z[peak] + 2, foot + 2]
     edges = sorted([0.0, *edges, 400.0])
-    wanted += [0.5 * (a + b) for a, b in zip(edges, edges[1:], strict=False) if b - a > 25]
+    wanted += [0.5 * (a + b) for a, b in pairwise(edges) if b - a > 25]
     depths = np.unique(np.round(np.clip(wanted, 1.0, 396.0)))
     keep = [depths[0]]
     for depth in depths[1:]:

@@ -4,6 +4,7 @@ import math
 from collections.abc import Iterable
 from dataclasses import dataclass
 from datetime import date, timedelta
+from itertools import pairwise
 
 DAY = 86400.0  # s
 
@@ -22,7 +23,7 @@ class Span:
         return (self.end - self.begin).days
 
     def steps(self, step_days: float) -> tuple[int, float]:
-        """Return how many equal steps no longer than ``step_days`` fill it, and their length [s]."""
+        """Return how many equal steps of at most ``step_days`` fill it, and how long [s]."""
         count = max(1, math.ceil(self.days / step_days))
         return count, self.days * DAY / count
 
@@ -49,10 +50,7 @@ def month_starts(begin: date, end: date) -> list[date]:
 
 
 def spans(begin: date, end: date, changes: Iterable[date]) -> list[Span]:
-    """Return the spans between month starts and dated changes; output at month starts and end."""
+    """Return the spans between month starts and dated changes; output at months and end."""
     outputs = {*month_starts(begin, end), end}
     edges = sorted({begin, *outputs, *(day for day in changes if begin < day < end)})
-    return [
-        Span(first, second, second in outputs)
-        for first, second in zip(edges, edges[1:], strict=False)
-    ]
+    return [Span(first, second, second in outputs) for first, second in pairwise(edges)]

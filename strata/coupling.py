@@ -1,8 +1,8 @@
 """How plants and column meet: feeds drawn from the layers, factors held, returns put back.
 
-A plant turns its feed into transfer factors: for gases and DIC the share that goes back, for all
-else the amount added.  The kernel withdraws the actual water and applies the held factors, so what
-is produced is exactly what was withdrawn and added less what was returned.
+A plant turns its feed into transfer factors: for gases and DIC the share that goes back, for
+all else the amount added.  The kernel withdraws the actual water and applies the held factors,
+so what is produced is exactly what was withdrawn and added less what was returned.
 """
 
 from collections.abc import Iterable, Sequence
@@ -31,6 +31,8 @@ Array = NDArray[np.float64]
 RETURN_TAG = "return_water"
 #: Tracers of which a share goes back; of the others an amount is added.
 _BY_SHARE = ("DIC", "CH4", "N2", "O2", "H2S")
+
+
 @dataclass(frozen=True)
 class Working:
     """What the plants do during a visit, as the column wants it."""
@@ -62,7 +64,8 @@ class Fleet:
         self.tags = (RETURN_TAG,) if self.plants else ()
         self.running: list[_Running] = []
         self.totals = {
-            plant.name: {"recovered_CH4": 0.0, "vented_CH4_total": 0.0} for plant in self.plants
+            plant.name: {"recovered_CH4": 0.0, "vented_CH4_total": 0.0}
+            for plant in self.plants
         }
         self.warnings: list[str] = []
 
@@ -71,7 +74,7 @@ class Fleet:
         return [d for plant in self.plants for d in timetable.event_dates(plant, begin, end)]
 
     def work(self, column: Column, around: Surroundings, day: date) -> Working:
-        """Return what the plants take and give from a day on, found from the column as it is."""
+        """Return what the plants take and give from a day on, by the column as it is."""
         self.running = []
         takes: list[Array] = []
         gives: list[Give] = []
@@ -98,7 +101,9 @@ class Fleet:
             self.running.append(running)
             self._warn(plant.name, operation.warnings)
         reference = [draw @ column.values / draw.sum() for draw in takes]
-        return Working(takes, gives, np.array(reference).reshape(len(takes), len(column.tracers)))
+        return Working(
+            takes, gives, np.array(reference).reshape(len(takes), len(column.tracers))
+        )
 
     def _put_back(
         self,
@@ -114,7 +119,9 @@ class Fleet:
             streams.append(operation.wash_returned)
         found = outlets(running.plant, operation)
         for number, (where, water) in enumerate(found):
-            source = source_of(f"{running.plant.name}, outlet {number + 1}", water, where, column)
+            source = source_of(
+                f"{running.plant.name}, outlet {number + 1}", water, where, column
+            )
             path = follow(source, around, self.lake.mixing.overshoot)
             link: dict[int, Array] = {}
             added = np.zeros(len(column.tracers))
@@ -144,7 +151,9 @@ class Fleet:
             left = sum(taken[row, METHANE] for row in running.takes)
             for give in running.gives:
                 left -= seconds * give.added[METHANE]
-                left -= sum(share[METHANE] * taken[row, METHANE] for row, share in give.link.items())
+                left -= sum(
+                    share[METHANE] * taken[row, METHANE] for row, share in give.link.items()
+                )
             made = running.operation.product.of("CH4")
             vented = running.operation.vented.of("CH4")
             totals = self.totals[running.plant.name]
@@ -252,11 +261,11 @@ def stream_of(draw: Array, column: Column) -> WaterStream:
 def factors(
     feed: WaterStream, back: WaterStream, tracers: Sequence[str], by_share: bool
 ) -> tuple[Array, Array]:
-    """Return the share of each tracer of a feed that goes back, and the amount added per second.
+    """Return the share of each tracer of a feed that goes back, and what is added [1/s].
 
-    A share for dissolved gases and DIC where ``by_share`` or where some is taken out (an amount
-    could take more than the water of a later day holds), an amount on top of all for the rest.
-    Tags of return water are given anew; other tags go along with the water.
+    A share for dissolved gases and DIC where ``by_share`` or where some is taken out (an
+    amount could take more than the water of a later day holds), an amount on top of all for
+    the rest. Tags of return water are given anew; other tags go along with the water.
     """
     link, added = np.ones(len(tracers)), np.zeros(len(tracers))
     for k, name in enumerate(tracers):
@@ -305,9 +314,7 @@ def excess_density(source: Source, around: Surroundings) -> float:
 
     def density(theta: float, salinity: float, mass: float, volume: float) -> float:
         return float(
-            parcel_density(
-                theta, salinity, pressure, mass, volume, around.haline_contraction
-            )
+            parcel_density(theta, salinity, pressure, mass, volume, around.haline_contraction)
         )
 
     lake = [

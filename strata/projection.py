@@ -1,6 +1,6 @@
 """The clock: steps column and plants together from the day of the casts to the horizon."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date
 
@@ -43,7 +43,7 @@ class _Track:
         self.flow.append(column.seen.flow.copy())
         self.diffusivity.append(column.seen.diffusivity.copy())
         self.mixed.append(float(column.state.mixed_depth[0]))
-        self.ledger.append(np.vstack([column.start, column.state.books]))
+        self.ledger.append(np.vstack([column.start, column.books]))
         self.error.append(column.ledger_error())
         self.plants.append(fleet.series())
 
@@ -73,9 +73,7 @@ def carry_on(
         around = column.surroundings()
         working = fleet.work(column, around, span.begin)
         gives = column.natural(around) + working.gives
-        _, done = column.advance(
-            weather, working.takes, gives, steps, dt, working.reference
-        )
+        _, done = column.advance(weather, working.takes, gives, steps, dt, working.reference)
         fleet.book(column, done * dt)
         steps -= done
 
@@ -175,7 +173,7 @@ def _first_note(track: _Track, column: Column, fleet: Fleet, day: date) -> None:
 
 
 def _record(
-    track: _Track, column: Column, fleet: Fleet, options: dict[str, object]
+    track: _Track, column: Column, fleet: Fleet, options: Mapping[str, object]
 ) -> results.Record:
     """Return what was noted as the record that a dataset is made of."""
     return results.Record(

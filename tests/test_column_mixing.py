@@ -1,4 +1,4 @@
-"""Diffusivities, pooling and the surface layer against published numbers and their own promises."""
+"""Diffusivities, pooling and the surface layer against published numbers and promises."""
 
 import numpy as np
 import pytest
@@ -11,6 +11,7 @@ from strata.column.mixing import (
     pair_stability,
     pool,
     staircase_diffusivity,
+    staircase_drive,
     turbulent_diffusivity,
 )
 from strata.column.surface import deepen, transfer_velocity, wind_power
@@ -44,7 +45,8 @@ def test_the_flux_law_of_kelley_gives_its_published_flux():
     step, jump = 0.7, 0.010
     warming = jump / step
     stability = (ratio - 1) * 9.81 * alpha * warming
-    heat, solute = staircase_diffusivity(stability, warming, alpha, 9.81, kappa, nu, step)
+    drive = staircase_drive(alpha, 9.81, kappa, nu, step)
+    heat, solute = staircase_diffusivity(stability, warming, alpha, 9.81, drive)
     assert heat * warming * 998.0 * 4182.0 == pytest.approx(0.100, abs=0.001)
     assert kelley_flux_ratio(ratio) == pytest.approx(0.171, abs=0.0005)
     # flux ratio = beta F_S / (alpha F_T) = K_S R / K_T
@@ -53,13 +55,14 @@ def test_the_flux_law_of_kelley_gives_its_published_flux():
 
 
 def test_double_diffusion_acts_only_where_the_law_holds():
-    inside = staircase_diffusivity(1e-6, 1e-3, 2.6e-4, 9.81, 1.46e-7, 9e-7, 0.7)
-    assert inside[0] > 0
-    for stability, warming, step in ((1e-6, -1e-3, 0.7), (1e-3, 1e-3, 0.7), (1e-6, 1e-3, 0.0)):
-        assert staircase_diffusivity(stability, warming, 2.6e-4, 9.81, 1.46e-7, 9e-7, step) == (
-            0.0,
-            0.0,
-        )
+    drive = staircase_drive(2.6e-4, 9.81, 1.46e-7, 9e-7, 0.7)
+    assert staircase_diffusivity(1e-6, 1e-3, 2.6e-4, 9.81, drive)[0] > 0
+    for stability, warming, push in (
+        (1e-6, -1e-3, drive),
+        (1e-3, 1e-3, drive),
+        (1e-6, 1e-3, 0.0),
+    ):
+        assert staircase_diffusivity(stability, warming, 2.6e-4, 9.81, push) == (0.0, 0.0)
 
 
 def test_turbulent_diffusivity_is_a_over_n_within_its_bounds():
@@ -77,7 +80,7 @@ def test_pooling_leaves_no_overturn_and_loses_nothing(seed):
     values, mass, space, volume, pressure = random_column(rng, count)
     held = volume @ values
     ranges = values.min(axis=0), values.max(axis=0)
-    pool(values, mass, space, volume, pressure, CONTRACTION, np.empty(values.shape[1] + 2))
+    pool(values, mass, space, volume, pressure, CONTRACTION)
     stability, _ = stability_of(values, mass, space, pressure, np.ones(count + 1))
     # equal neighbours may differ in the last digit of their density
     assert stability[1:-1].min() > -1e-14
@@ -96,7 +99,6 @@ def test_pooling_does_nothing_to_a_stable_column():
         np.ones(40),
         np.linspace(1e5, 5e5, 41),
         CONTRACTION,
-        np.empty(4),
     )
     assert blocks == 0
     assert np.array_equal(values, before)

@@ -42,13 +42,13 @@ def spread_of(values, depth):
 
 
 def front_run(faces, kappa, years=100.0, speed=1.0 / YEAR, width=2.0, at=220.0):
-    """Carry an erf front up a cylinder; return what came out, what is exact, and the spurious K."""
+    """Carry an erf front up a cylinder; return it, what is exact, spurious K and shift."""
     volume, depth = np.diff(faces), 0.5 * (faces[1:] + faces[:-1])
     early = width**2 / (4 * kappa)
 
     def exact(time):
-        return lambda z: 0.5 * erfc(
-            -(z - (at - speed * time)) / np.sqrt(4 * kappa * (time + early))
+        return lambda z: (
+            0.5 * erfc(-(z - (at - speed * time)) / np.sqrt(4 * kappa * (time + early)))
         )
 
     values = layer_means_of(exact(0.0), faces)[:, None].copy()
@@ -78,8 +78,8 @@ def test_a_front_carried_for_a_century_spreads_by_its_own_diffusivity_alone(step
 
 
 def test_a_front_keeps_its_shape_across_layers_that_change_thickness():
-    # 1 m layers on the path of the front, 4 m elsewhere, changing by at most 1.25 from one to the
-    # next; same goal as on even layers
+    # 1 m layers on the path of the front, 4 m elsewhere, changing by at most 1.25 from one to
+    # the next; same goal as on even layers
     thick = [4.0]
     while sum(thick) < 300:
         middle = sum(thick) + thick[-1] / 2
@@ -100,9 +100,7 @@ def test_face_values_are_of_sixth_order_on_uneven_layers():
         faces = (raw - raw[0]) / (raw[-1] - raw[0]) * 2 * np.pi
         mean = (np.cos(faces[:-1]) - np.cos(faces[1:])) / np.diff(faces)
         weight, start = face_weights(np.diff(faces))
-        value = np.array(
-            [weight[f] @ mean[start[f] : start[f] + 6] for f in range(count + 1)]
-        )
+        value = np.array([weight[f] @ mean[start[f] : start[f] + 6] for f in range(count + 1)])
         errors.append(np.abs(value - np.sin(faces)).max())
     orders = np.log2(np.array(errors[:-1]) / errors[1:])
     print("observed order of the face values:", orders)
@@ -122,7 +120,9 @@ def test_diffusion_in_a_closed_cylinder_follows_the_cosine_solution():
         for _ in range(steps):
             diffuse(values, conductance, np.diff(faces), time / steps, work)
         fade = np.exp(-kappa * (np.pi / height) ** 2 * time)
-        exact = layer_means_of(lambda z: 1 + fade * np.cos(np.pi * z / height), faces)
+        exact = layer_means_of(
+            lambda z, fade=fade: 1 + fade * np.cos(np.pi * z / height), faces
+        )
         errors.append(np.abs(values[:, 0] - exact).max())
     orders = np.log2(np.array(errors[:-1]) / errors[1:])
     print("observed order of diffusion in space:", orders)

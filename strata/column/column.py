@@ -1,7 +1,7 @@
 """The column of a lake as an object: its state, its books, and how it is carried on.
 
-The compiled loop of :mod:`strata.column.kernel` does the work; this holds its arrays, refreshes
-what is held between visits of the clock, and words what the loop could not do.
+The compiled loop of :mod:`strata.column.kernel` does the work; this holds its arrays,
+refreshes what is held between visits of the clock, and words what the loop could not do.
 """
 
 from collections.abc import Mapping, Sequence
@@ -10,11 +10,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from strata import ranges
 from strata.column import kernel
+from strata.column.mixing import staircase_drive
 from strata.column.streams import Give, Source, Surroundings, follow, spread_evenly, stack
-from strata.column.surface import transfer_velocity, wind_power
+from strata.column.surface import air_exchange, wind_power
 from strata.column.tracers import (
-    ALKALINITY,
     DIC,
     METHANE,
     NITROGEN,
@@ -27,9 +28,11 @@ from strata.column.tracers import (
 )
 from strata.column.transport import face_weights
 from strata.compiled import broadcast
+from strata.constants import DRY_AIR
 from strata.errors import ComputationError
-from strata.gas import air
-from strata.gas.diffusivity import gas_diffusivity, schmidt_number
+from strata.gas.diffusivity import gas_diffusivity
+from strata.gas.laws import Laws
+from strata.gas.table import gas_table
 from strata.lake.basin import Basin, build_basin
 from strata.lake.site import Lake, River, Spring
 from strata.species import SPECIES
@@ -52,6 +55,8 @@ REFERENCE_HEAT_CAPACITY = 4180.0  # J kg-1 K-1
 LEDGER_TOLERANCE = 1e-10
 #: Gases in the order of the kernel's masses and volumes.
 GASES = ("CO2", "CH4", "N2", "O2", "H2S")
+#: Tracers are laid out in groups of this many.
+LANES = 4
 #: Free gases that cross the surface, by tracer column.
 AT_SURFACE = {DIC: "CO2", METHANE: "CH4", NITROGEN: "N2", OXYGEN: "O2", SULFIDE: "H2S"}
 
@@ -65,6 +70,30 @@ class Weather:
     wind_speed: float  # m/s
     rain: float  # m/s
     evaporation: float  # m/s
+
+
+@dataclass(frozen=True)
+class _AirTable:
+    """Gases at the surface, in the order of ``AT_SURFACE``, as compiled code wants them."""
+
+    rows: Array
+    laws: Array
+    shares: Array  # mole fractions of dry air
+    schmidt: Array
+    diffusion: Array
+
+    @classmethod
+    def of(cls, lake: Lake) -> "_AirTable":
+        """Return the table for a lake's laws."""
+        gases = list(AT_SURFACE.values())
+        table = gas_table(gases, Laws.of(lake.site.laws))
+        return cls(
+            rows=table.rows,
+            laws=table.laws,
+            shares=np.array([DRY_AIR.get(gas, 0.0) for gas in gases]),
+            schmidt=np.array([SPECIES[gas].schmidt or (0.0,) * 4 for gas in gases]),
+            diffusion=np.array([SPECIES[gas].diffusivity for gas in gases]),
+        )
 
 
 class Column:
@@ -86,40 +115,49 @@ class Column:
         self.basin: Basin = build_basin(lake.hypsography, lake.layer_faces)
         self.gravity = standard_gravity(lake.site.latitude)
         self.tracers = names(tags)
-        values = np.array(values, dtype=np.float64, order="C")
+        # the compiler's loops over tracers run in fours: columns of nothing fill the last four
+        width = -(-len(self.tracers) // LANES) * LANES
+        values = np.pad(values, ((0, 0), (0, width - values.shape[1])))
         self.molar_mass = np.array([SPECIES[gas].molar_mass for gas in GASES])
         self.molar_volume = np.array(
-            [lake.site.co2_molar_volume]
-            + [SPECIES[gas].molar_volume for gas in GASES[1:]]
+            [lake.site.co2_molar_volume] + [SPECIES[gas].molar_volume for gas in GASES[1:]]
         )
         self.hydrogen = np.full(self.basin.layers, 1e-4)
         self.face_pressure, self.pressure = self._hydrostatic(values)
-        self.grid = self._grid()
+        self.grid = self._grid(width)
         self.state = kernel.State(
             values=values,
             hydrogen=self.hydrogen,
             mixed_depth=np.array([self._first_mixed_depth(values)]),
-            books=np.zeros((len(kernel.LEDGER_TERMS), len(self.tracers))),
-            taken=np.zeros((0, len(self.tracers))),
+            books=np.zeros((len(kernel.LEDGER_TERMS), width)),
+            taken=np.zeros((0, width)),
         )
         self.start = self.inventory()
         count = self.basin.layers + 1
         self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
+        self._springs = [self._spring_source(spring) for spring in lake.springs]
+        self._rivers = [self.river(river) for river in lake.rivers]
+        self._air = _AirTable.of(lake)
         self.refresh()
 
     @property
     def values(self) -> Array:
-        """Return the tracers of the layers, (n, m)."""
-        return self.state.values
+        """Return the tracers of the layers, (n, m); a view."""
+        return self.state.values[:, : len(self.tracers)]
+
+    @property
+    def books(self) -> Array:
+        """Return the running sums of the ledger since the start, (terms, m)."""
+        return self.state.books[:, : len(self.tracers)]
 
     def inventory(self) -> Array:
         """Return the content of the lake for every tracer [tracer unit times m3]."""
-        return self.basin.volume @ self.state.values
+        return self.basin.volume @ self.values
 
     def ledger_error(self) -> Array:
         """Return what the books miss, relative to the start and all that passed."""
-        missing = self.start + self.state.books.sum(axis=0) - self.inventory()
-        scale = np.abs(self.start) + np.abs(self.state.books).sum(axis=0)
+        missing = self.start + self.books.sum(axis=0) - self.inventory()
+        scale = np.abs(self.start) + np.abs(self.books).sum(axis=0)
         return np.where(scale > 0, np.abs(missing) / np.where(scale > 0, scale, 1.0), 0.0)
 
     def check_ledger(self) -> None:
@@ -191,7 +229,7 @@ class Column:
         )
         return float(mixed_layer_depth(self.basin.depth, density))
 
-    def _grid(self) -> kernel.Grid:
+    def _grid(self, width: int) -> kernel.Grid:
         """Return what never changes in a run, as the kernel wants it."""
         basin, lake = self.basin, self.lake
         weight, start = face_weights(basin.volume)
@@ -200,7 +238,6 @@ class Column:
         return kernel.Grid(
             volume=basin.volume,
             area=basin.area,
-            bed_area=basin.bed_area,
             face=basin.faces,
             depth=basin.depth,
             distance=distance,
@@ -210,7 +247,7 @@ class Column:
             physics=np.array(
                 [self.gravity, lake.site.haline_contraction, mixing.convection_efficiency]
             ),
-            mixing=np.array([mixing.coefficient, mixing.least, mixing.most, mixing.staircase_step]),
+            mixing=np.array([mixing.coefficient, mixing.least, mixing.most]),
             rates=np.array(
                 [
                     rates.methane_oxidation,
@@ -221,14 +258,14 @@ class Column:
                     rates.phosphate_removal,
                 ]
             ),
-            bed_flux=self._bed_flux(),
+            bed=basin.bed_area[:, None] * self._bed_flux(width),
             molar_mass=self.molar_mass,
             molar_volume=self.molar_volume,
         )
 
-    def _bed_flux(self) -> Array:
+    def _bed_flux(self, width: int) -> Array:
         """Return the flux of each tracer out of the bed of each layer [amount m-2 s-1]."""
-        flux = np.zeros((self.basin.layers, len(self.tracers)))
+        flux = np.zeros((self.basin.layers, width))
         for source in self.lake.bed:
             share = self.basin.overlap(source.top, source.foot)
             if source.tracer == "heat":
@@ -239,17 +276,23 @@ class Column:
 
     @property
     def heat_capacity(self) -> float:
-        """Return the reference heat capacity per volume [J m-3 K-1] that turns heat into kelvin."""
+        """Return the reference heat capacity per volume [J m-3 K-1]."""
         return REFERENCE_DENSITY * REFERENCE_HEAT_CAPACITY
 
     def refresh(self) -> None:
         """Work out again what is held between visits of the clock."""
-        values = self.values
+        values = self.state.values
         self.constants = self._carbonate_constants(values, self.pressure)
         mass, space = self.gas_load()
         grid = self.grid
         kernel.pair_stability(
-            values, mass, space, grid.pressure, grid.distance, grid.physics, self.seen.stability
+            values,
+            mass,
+            space,
+            grid.pressure,
+            grid.distance,
+            grid.physics,
+            self.seen.stability,
         )
         face_theta = np.empty(self.basin.layers + 1)
         face_theta[1:-1] = 0.5 * (values[1:, TEMPERATURE] + values[:-1, TEMPERATURE])
@@ -258,16 +301,23 @@ class Column:
         salinity = np.interp(self.basin.faces, self.basin.depth, values[:, SALINITY])
         self.expansion = thermal_expansion(in_situ, salinity, self.face_pressure)
         self.heat = thermal_diffusivity(in_situ)
-        self.viscosity = kinematic_viscosity(in_situ)
+        self.drive = broadcast(staircase_drive)(
+            self.expansion,
+            self.gravity,
+            self.heat,
+            kinematic_viscosity(in_situ),
+            self.lake.mixing.staircase_step,
+        )
         self.molecular = self._molecular(in_situ)
 
     def _molecular(self, in_situ: Array) -> Array:
         """Return the molecular diffusivity of each tracer at the faces [m2 s-1].
 
-        DIC moves as free CO2 and bicarbonate, by their shares; ions, phosphate and tags as salt.
+        DIC moves as free CO2 and bicarbonate, by their shares; ions, phosphate and tags as
+        salt.
         """
         salt = salt_diffusion(in_situ)
-        molecular = np.repeat(salt[:, None], len(self.tracers), axis=1)
+        molecular = np.repeat(salt[:, None], self.state.values.shape[1], axis=1)
         molecular[:, TEMPERATURE] = self.heat
         for column, gas in AT_SURFACE.items():
             molecular[:, column] = gas_diffusivity(gas, in_situ)
@@ -279,12 +329,12 @@ class Column:
     def free_co2(self) -> Array:
         """Return free CO2 of the layers [mol m-3]."""
         co2 = np.empty(self.basin.layers)
-        kernel.free_co2_rows(self.values, self.constants, self.hydrogen, co2)
+        kernel.free_co2_rows(self.state.values, self.constants, self.hydrogen, co2)
         return co2
 
     def gas_load(self) -> tuple[Array, Array]:
         """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases of the layers."""
-        return self._gas_load(self.values, self.constants)
+        return self._gas_load(self.state.values, self.constants)
 
     def surroundings(self) -> Surroundings:
         """Return the water a plume meets now."""
@@ -323,42 +373,38 @@ class Column:
         )
         return row[0], float(mass[0]), float(space[0])
 
-    def spring(self, spring: Spring, around: Surroundings) -> Give:
-        """Return a spring as the kernel holds it: a plume from its outlet, or over its interval."""
-        theta = potential_temperature(spring.temperature, self.pressure_at(spring.depth))
-        row, mass, space = self.parcel(
-            theta, spring.salinity, spring.dissolved, spring.depth
+    def _spring_source(self, spring: Spring) -> tuple[Spring, Array, Source]:
+        """Return a spring with what it carries and as the source of a plume."""
+        theta = float(
+            potential_temperature(spring.temperature, self.pressure_at(spring.depth))
         )
+        row, mass, space = self.parcel(theta, spring.salinity, spring.dissolved, spring.depth)
         if f"spring_{spring.name}" in self.tags:
             row[index(f"spring_{spring.name}", self.tags)] = 1.0
-        if spring.spread is not None:
-            given = spread_evenly(spring, self.basin)
-            entrained = np.zeros(self.basin.layers)
-        else:
-            path = follow(
-                Source(
-                    name=f"spring {spring.name}",
-                    depth=spring.depth,
-                    flow=spring.flow,
-                    temperature=row[TEMPERATURE],
-                    salinity=row[SALINITY],
-                    gas_mass=mass,
-                    gas_volume=space,
-                    ports=spring.ports,
-                    port_diameter=spring.port_diameter,
-                    port_spacing=spring.port_spacing,
-                ),
-                around,
-                self.lake.mixing.overshoot,
-            )
-            given, entrained = path.given, path.entrained
-        return Give(
-            kind=kernel.SPRINGS,
-            water=spring.flow,
-            added=spring.flow * row,
-            given=given,
-            entrained=entrained,
+        source = Source(
+            name=f"spring {spring.name}",
+            depth=spring.depth,
+            flow=spring.flow,
+            temperature=theta,
+            salinity=spring.salinity,
+            gas_mass=mass,
+            gas_volume=space,
+            ports=spring.ports,
+            port_diameter=spring.port_diameter,
+            port_spacing=spring.port_spacing,
         )
+        return spring, row, source
+
+    def _spring(
+        self, spring: Spring, row: Array, source: Source, around: Surroundings
+    ) -> Give:
+        """Return a spring as it enters now: a plume from its outlet, or over its interval."""
+        if spring.spread is not None:
+            given, entrained = spread_evenly(spring, self.basin), np.zeros(self.basin.layers)
+        else:
+            path = follow(source, around, self.lake.mixing.overshoot)
+            given, entrained = path.given, path.entrained
+        return Give(kernel.SPRINGS, spring.flow, spring.flow * row, given, entrained)
 
     def river(self, river: River) -> Give:
         """Return a river as the kernel holds it: into the top layer."""
@@ -375,22 +421,35 @@ class Column:
 
     def natural(self, around: Surroundings) -> list[Give]:
         """Return all springs and rivers as they enter the column as it is."""
-        gives = [self.spring(spring, around) for spring in self.lake.springs]
-        return gives + [self.river(river) for river in self.lake.rivers]
+        return [self._spring(*spring, around) for spring in self._springs] + self._rivers
 
     def _exchange(self, wind_speed: float) -> Array:
-        """Return transfer velocity [m s-1] and concentration at equilibrium with air, per tracer."""
-        surface, site = self.values[0], self.lake.site
-        exchange = np.zeros((len(self.tracers), 2))
-        for column, gas in AT_SURFACE.items():
-            exchange[column, 0] = transfer_velocity(
-                wind_speed, float(schmidt_number(gas, surface[TEMPERATURE]))
+        """Return transfer velocity [m s-1] and equilibrium with air, per tracer."""
+        temperature = float(
+            ranges.within(
+                "surface temperature",
+                self.values[0, TEMPERATURE],
+                (0.0, 30.0),
+                "degC",
+                "Schmidt numbers of Wanninkhof 1992",
             )
-            exchange[column, 1] = float(
-                air.equilibrium(
-                    gas, surface[TEMPERATURE], surface[SALINITY], site.air_pressure
-                )
-            )
+        )
+        air = self._air
+        found = np.empty((len(AT_SURFACE), 2))
+        air_exchange(
+            wind_speed,
+            temperature,
+            self.values[0, SALINITY],
+            self.lake.site.air_pressure,
+            air.rows,
+            air.laws,
+            air.shares,
+            air.schmidt,
+            air.diffusion,
+            found,
+        )
+        exchange = np.zeros((self.state.values.shape[1], 2))
+        exchange[list(AT_SURFACE)] = found
         return exchange
 
     def advance(
@@ -429,18 +488,18 @@ class Column:
         strata.ComputationError
             If a value is no longer a number, or more would leave a layer than it holds.
         """
-        count = len(self.tracers)
-        stacked = stack(takes, gives, self.basin.layers, count)
-        if reference is None:
-            reference = np.full((len(takes), count), np.nan)
-        self.state = self.state._replace(taken=np.zeros((len(takes), count)))
+        width = self.state.values.shape[1]
+        stacked = stack(takes, gives, self.basin.layers, width)
+        watched = np.full((len(takes), width), np.nan)
+        if reference is not None:
+            watched[:, : reference.shape[1]] = reference
+        self.state = self.state._replace(taken=np.zeros((len(takes), width)))
         mixing = self.lake.mixing
         held = kernel.Held(
             constants=self.constants,
             molecular=self.molecular,
             expansion=self.expansion,
-            heat=self.heat,
-            viscosity=self.viscosity,
+            drive=self.drive,
             air=np.array(
                 [
                     weather.equilibrium_temperature,
@@ -456,19 +515,21 @@ class Column:
                 ]
             ),
             exchange=self._exchange(weather.wind_speed),
-            reference=reference,
-            **stacked.__dict__,
+            reference=watched,
+            from_bed=self.grid.bed.sum(axis=0),
+            **vars(stacked),
         )
         code, done, layer, tracer = kernel.advance(
             self.state, self.grid, held, self.seen, steps, dt
         )
         if code == kernel.NOT_FINITE:
             raise ComputationError(
-                f"{self.tracers[tracer]} at {self.basin.depth[layer]:.1f} m is no longer a number"
+                f"{self.tracers[tracer]} at {self.basin.depth[layer]:.1f} m is no longer"
+                " a number"
             )
         if code == kernel.OVERDRAWN:
             raise ComputationError(
-                f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a step"
-                " than it can give"
+                f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a"
+                " step than it can give"
             )
         return code == kernel.FEED_CHANGED, int(done)

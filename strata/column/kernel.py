@@ -1,8 +1,8 @@
-"""The compiled time loop: everything that happens to the column between two visits of the clock.
+"""The compiled time loop: all that happens to the column between two visits of the clock.
 
-One step: surface exchange, reactions, springs, plants and the flow they drive, diffusion, then the
-overturning of whatever became unstable.  What changes slowly (constants of the carbonate system,
-expansion, molecular diffusivities, plumes, plant factors) is held between visits.
+One step: surface exchange, reactions, springs, plants and the flow they drive, diffusion, then
+the overturning of whatever became unstable.  What changes slowly (constants of the carbonate
+system, expansion, molecular diffusivities, plumes, plant factors) is held between visits.
 """
 
 from typing import NamedTuple
@@ -63,7 +63,6 @@ class Grid(NamedTuple):
 
     volume: Array  # (n,) m3
     area: Array  # (n + 1,) m2
-    bed_area: Array  # (n,) m2
     face: Array  # (n + 1,) m
     depth: Array  # (n,) m
     distance: Array  # (n + 1,) m between the middles of the layers at a face
@@ -71,9 +70,9 @@ class Grid(NamedTuple):
     start: NDArray[np.int64]  # (n + 1,)
     pressure: Array  # (n + 1,) Pa at the faces
     physics: Array  # gravity, haline contraction, convection efficiency
-    mixing: Array  # a, least, most, staircase step
+    mixing: Array  # a, least, most
     rates: Array  # of the reactions, see there
-    bed_flux: Array  # (n, m) amount per bed area and second
+    bed: Array  # (n, m) what the bed gives each layer, amount per second
     molar_mass: Array  # CO2, CH4, N2, O2, H2S, kg/mol
     molar_volume: Array  # the same, m3/mol
 
@@ -84,9 +83,10 @@ class Held(NamedTuple):
     constants: Array  # (n, 3) k1, k2, kw of the carbonate system
     molecular: Array  # (n + 1, m) molecular diffusivity, m2/s
     expansion: Array  # (n + 1,) thermal expansion, 1/K
-    heat: Array  # (n + 1,) molecular diffusivity of heat, m2/s
-    viscosity: Array  # (n + 1,) kinematic, m2/s
-    air: Array  # equilibrium temperature, K A / (rho cp) in m3/s, wind power per area, rain, evaporation
+    drive: Array  # (n + 1,) of the staircase, see there
+    air: (
+        Array  # equilibrium temperature, K A / (rho cp) in m3/s, wind power, rain, evaporation
+    )
     exchange: Array  # (m, 2) transfer velocity m/s and concentration at equilibrium with air
     take: Array  # (j, n) withdrawal from each layer, m3/s
     link: Array  # (k, j, m) share of take j that goes into give k
@@ -94,6 +94,10 @@ class Held(NamedTuple):
     water: Array  # (k,) m3/s: flow of give k but for what it entrains
     entrained: Array  # (k, n) m3/s taken along on the way
     given: Array  # (k, n) share of give k that each layer gets
+    take_span: NDArray[np.int64]  # (j, 2) first layer of take j, and the one behind its last
+    plume_span: NDArray[np.int64]  # (k, 2) the same of what give k takes along
+    give_span: NDArray[np.int64]  # (k, 2) and of where it ends
+    from_bed: Array  # (m,) what the bed gives in all, amount per second
     kind: NDArray[np.int64]  # (k,) row of the ledger
     reference: Array  # (j, m) concentration at which the factors were found; NaN: none
 
@@ -179,7 +183,7 @@ def gas_load(values, constants, hydrogen, molar_mass, molar_volume, gas_mass, ga
 
 @compiled
 def face_flow(held, flow):
-    """Fill the upward flow through the faces [m3 s-1] by continuity and return the largest outflow.
+    """Fill the upward flow through the faces by continuity [m3 s-1].
 
     The lake level is fixed: what enters below a face and does not leave below it passes it.
     """
@@ -199,51 +203,47 @@ def face_flow(held, flow):
 
 
 @compiled
-def exchange_with_streams(values, grid, held, dt, state, outlet, gain, carried):
+def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn, carried):
     """Apply takes, gives, entrainment, outlet, rain and evaporation as one change of contents.
 
-    ``gain`` (n, m) and ``carried`` (m) are workspace.
+    ``gain`` (n, m), ``withdrawn`` (j, m) and ``carried`` (m) are workspace.
     """
     count, tracers = values.shape
     takes, gives = held.take.shape[0], held.water.shape[0]
-    gain[:, :] = 0.0
-    for k in range(gives):
+    for i in range(count):
         for m in range(tracers):
-            carried[m] = 0.0
-        for i in range(count):
-            flow = held.entrained[k, i]
-            if flow > 0.0:
-                for m in range(tracers):
-                    amount = flow * values[i, m] * dt
-                    carried[m] += amount
-                    gain[i, m] -= amount
-        for j in range(takes):
-            for m in range(tracers):
-                withdrawn = 0.0
-                for i in range(count):
-                    if held.take[j, i] > 0.0:
-                        withdrawn += held.take[j, i] * values[i, m]
-                part = held.link[k, j, m] * withdrawn * dt
-                carried[m] += part
-                state.books[held.kind[k], m] += part
-        for m in range(tracers):
-            part = held.added[k, m] * dt
-            carried[m] += part
-            state.books[held.kind[k], m] += part
-        for i in range(count):
-            share = held.given[k, i]
-            if share > 0.0:
-                for m in range(tracers):
-                    gain[i, m] += share * carried[m]
+            gain[i, m] = dt * grid.bed[i, m]
+    for m in range(tracers):
+        state.books[BED, m] += dt * held.from_bed[m]
     for j in range(takes):
-        for i in range(count):
-            flow = held.take[j, i]
-            if flow > 0.0:
-                for m in range(tracers):
-                    amount = flow * values[i, m] * dt
-                    gain[i, m] -= amount
-                    state.taken[j, m] += amount
-                    state.books[INTAKE, m] -= amount
+        for m in range(tracers):
+            withdrawn[j, m] = 0.0
+        for i in range(held.take_span[j, 0], held.take_span[j, 1]):
+            flow = held.take[j, i] * dt
+            for m in range(tracers):
+                amount = flow * values[i, m]
+                withdrawn[j, m] += amount
+                gain[i, m] -= amount
+        for m in range(tracers):
+            state.taken[j, m] += withdrawn[j, m]
+            state.books[INTAKE, m] -= withdrawn[j, m]
+    for k in range(gives):
+        kind = held.kind[k]
+        for m in range(tracers):
+            carried[m] = held.added[k, m] * dt
+            for j in range(takes):
+                carried[m] += held.link[k, j, m] * withdrawn[j, m]
+            state.books[kind, m] += carried[m]
+        for i in range(held.plume_span[k, 0], held.plume_span[k, 1]):
+            flow = held.entrained[k, i] * dt
+            for m in range(tracers):
+                amount = flow * values[i, m]
+                carried[m] += amount
+                gain[i, m] -= amount
+        for i in range(held.give_span[k, 0], held.give_span[k, 1]):
+            share = held.given[k, i]
+            for m in range(tracers):
+                gain[i, m] += share * carried[m]
     for m in range(tracers):
         amount = outlet * values[0, m] * dt
         gain[0, m] -= amount
@@ -254,11 +254,6 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, carried):
     gain[0, TEMPERATURE] += rain - lost
     state.books[RAIN, TEMPERATURE] += rain
     state.books[EVAPORATION, TEMPERATURE] -= lost
-    for i in range(count):
-        for m in range(tracers):
-            amount = grid.bed_area[i] * grid.bed_flux[i, m] * dt
-            gain[i, m] += amount
-            state.books[BED, m] += amount
     return gain
 
 
@@ -266,11 +261,13 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, carried):
 def breathe(values, grid, held, state, dt, constants, hydrogen):
     """Exchange heat and gases with the air for one step.
 
-    Heat goes into the top layer, from where cooling overturns it and wind carries it down; gases
-    into the whole mixed layer, which is uniform.  Both are implicit in the mixed layer.
+    Heat goes into the top layer, from where cooling overturns it and wind carries it down;
+    gases into the whole mixed layer, which is uniform.  Both are implicit in the mixed layer.
     """
     foot, mixed = 0, 0.0
-    while foot < values.shape[0] and (foot == 0 or grid.face[foot + 1] <= state.mixed_depth[0]):
+    while foot < values.shape[0] and (
+        foot == 0 or grid.face[foot + 1] <= state.mixed_depth[0]
+    ):
         mixed += grid.volume[foot]
         foot += 1
     pull = held.air[1] * dt
@@ -293,9 +290,7 @@ def breathe(values, grid, held, state, dt, constants, hydrogen):
             share = co2 / values[0, DIC]
         pull = held.exchange[m, 0] * grid.area[0] * dt
         amount = (
-            pull
-            * (held.exchange[m, 1] - share * values[0, m])
-            / (1.0 + pull * share / mixed)
+            pull * (held.exchange[m, 1] - share * values[0, m]) / (1.0 + pull * share / mixed)
         )
         for i in range(foot):
             values[i, m] += amount / mixed
@@ -320,7 +315,7 @@ def advance(state, grid, held, seen, steps, dt):
     work = np.empty((3, count, tracers))
     gain = np.empty((count, tracers))
     carried = np.empty(tracers)
-    mean = np.empty(tracers + 2)
+    withdrawn = np.empty((held.take.shape[0], tracers))
     gas_mass = np.empty(count)
     gas_volume = np.empty(count)
     _load(state, grid, held, gas_mass, gas_volume)
@@ -344,10 +339,10 @@ def advance(state, grid, held, seen, steps, dt):
         )
         for _ in range(parts):
             part = dt / parts
-            exchange_with_streams(values, grid, held, part, state, outlet, gain, carried)
-            advect(
-                values, seen.flow, grid.volume, grid.weight, grid.start, part, edge, flux
+            exchange_with_streams(
+                values, grid, held, part, state, outlet, gain, withdrawn, carried
             )
+            advect(values, seen.flow, grid.volume, grid.weight, grid.start, part, edge, flux)
             for i in range(count):
                 for m in range(tracers):
                     values[i, m] += gain[i, m] / grid.volume[i]
@@ -366,9 +361,7 @@ def advance(state, grid, held, seen, steps, dt):
             held.air[2] * grid.area[0] * dt,
         )
         if _compare(values, grid, gas_mass, gas_volume, seen) > 0:
-            pool(
-                values, gas_mass, gas_volume, grid.volume, grid.pressure, grid.physics[1], mean
-            )
+            pool(values, gas_mass, gas_volume, grid.volume, grid.pressure, grid.physics[1])
         for i in range(count):
             for m in range(tracers):
                 if not np.isfinite(values[i, m]):
@@ -408,7 +401,7 @@ def _compare(values, grid, gas_mass, gas_volume, seen):
 
 @compiled
 def _parts(grid, held, flow, outlet, dt):
-    """Return how many parts a step of streams and advection needs to stay within the layers."""
+    """Return how many parts a step needs so that no layer gives more than it holds."""
     worst, where = 0.0, 0
     for i in range(grid.volume.shape[0]):
         out = max(flow[i], 0.0) if i > 0 else max(outlet, 0.0)
@@ -438,9 +431,7 @@ def _conduct(values, grid, held, seen, conductance):
             (values[f, TEMPERATURE] - values[f - 1, TEMPERATURE]) / grid.distance[f],
             held.expansion[f],
             grid.physics[0],
-            held.heat[f],
-            held.viscosity[f],
-            grid.mixing[3],
+            held.drive[f],
         )
         seen.diffusivity[f] = turbulent + solute
         over = grid.area[f] / grid.distance[f]

@@ -1,8 +1,8 @@
 """How strongly the column mixes, and what happens where it is unstable.
 
-Turbulent diffusivity a / N [G84] within bounds; double diffusion through a staircase where warm
-salty water lies under cool fresh [K90]; layers that are heavier than the one below are pooled
-with it until neutral.
+Turbulent diffusivity a / N [G84] within bounds; double diffusion through a staircase where
+warm salty water lies under cool fresh [K90]; layers that are heavier than the one below are
+pooled with it until neutral.
 
 [G84] Gargett 1984, J. Mar. Res. 42:359-393.
 [K90] Kelley 1990, J. Geophys. Res. 95:3365-3371: flux F_H / (rho c_p) = C kappa
@@ -22,7 +22,7 @@ STAIRCASE_RANGE = (1.1, 10.0)
 
 @compiled
 def turbulent_diffusivity(stability, coefficient, least, most):
-    """Return a / N within its bounds [m2 s-1]; the upper bound where the pair is not stable."""
+    """Return a / N within its bounds [m2 s-1]; the upper one where the pair is not stable."""
     if stability <= 0.0:
         return most
     return min(max(coefficient / math.sqrt(stability), least), most)
@@ -37,35 +37,40 @@ def kelley_factor(density_ratio):
 @compiled
 def kelley_flux_ratio(density_ratio):
     """Return the ratio of the buoyancy fluxes of salt and heat of [K90]."""
-    excess = (density_ratio - 1.0) ** 1.5
+    excess = (density_ratio - 1.0) * math.sqrt(density_ratio - 1.0)
     return (density_ratio + 1.4 * excess) / (1.0 + 14.0 * excess)
 
 
 @compiled
-def staircase_diffusivity(
-    stability, warming, expansion, gravity, heat_diffusivity, viscosity, step
-):
+def staircase_drive(expansion, gravity, heat_diffusivity, viscosity, step):
+    """Return kappa (alpha g / (kappa nu))^(1/3) H^(4/3) of the flux law of [K90]."""
+    lift = (expansion * gravity / (heat_diffusivity * viscosity)) ** (1.0 / 3.0)
+    return heat_diffusivity * lift * step ** (4.0 / 3.0)
+
+
+@compiled
+def staircase_diffusivity(stability, warming, expansion, gravity, drive):
     """Return the effective diffusivities of heat and of solutes through a staircase [m2 s-1].
 
     ``stability`` is buoyancy frequency squared [s-2], ``warming`` the rise of potential
-    temperature with depth [K m-1], ``step`` the height of a step [m], so that the jump over it is
-    step times warming whatever the layers of the model.  Zero outside the range of the law.
+    temperature with depth [K m-1], ``drive`` that of :func:`staircase_drive`: the jump over a
+    step is its height times the warming, whatever the layers of the model.  Zero outside the
+    range of the law.
     """
-    if warming <= 0.0 or stability <= 0.0 or step <= 0.0:
+    if warming <= 0.0 or stability <= 0.0 or drive <= 0.0:
         return 0.0, 0.0
     ratio = 1.0 + stability / (gravity * expansion * warming)
     if ratio < STAIRCASE_RANGE[0] or ratio > STAIRCASE_RANGE[1]:
         return 0.0, 0.0
-    lift = (expansion * gravity / (heat_diffusivity * viscosity)) ** (1.0 / 3.0)
-    jump = step * warming
-    flux = kelley_factor(ratio) * heat_diffusivity * lift * jump ** (4.0 / 3.0)
-    heat = flux / warming
+    heat = kelley_factor(ratio) * drive * warming ** (1.0 / 3.0)
     return heat, heat * kelley_flux_ratio(ratio) / ratio
 
 
 @compiled
-def pair_stability(values, gas_mass, gas_volume, face_pressure, face_distance, site, stability):
-    """Fill buoyancy frequency squared [s-2] at the inner faces and return how many are unstable.
+def pair_stability(
+    values, gas_mass, gas_volume, face_pressure, face_distance, site, stability
+):
+    """Fill buoyancy frequency squared [s-2] at the inner faces; return how many overturn.
 
     The two layers at a face are brought to its pressure; ``site`` is (gravity, haline
     contraction).
@@ -75,7 +80,12 @@ def pair_stability(values, gas_mass, gas_volume, face_pressure, face_distance, s
     for f in range(1, values.shape[0]):
         p = face_pressure[f]
         upper = parcel_density(
-            values[f - 1, 0], values[f - 1, 1], p, gas_mass[f - 1], gas_volume[f - 1], contraction
+            values[f - 1, 0],
+            values[f - 1, 1],
+            p,
+            gas_mass[f - 1],
+            gas_volume[f - 1],
+            contraction,
         )
         lower = parcel_density(
             values[f, 0], values[f, 1], p, gas_mass[f], gas_volume[f], contraction
@@ -86,26 +96,26 @@ def pair_stability(values, gas_mass, gas_volume, face_pressure, face_distance, s
 
 
 @compiled
-def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, mean):
+def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction):
     """Mix layers that lie heavier on lighter, exactly and conservatively, until none does.
 
-    ``mean`` (m + 2) is workspace: the tracers of the block in hand, then its gas mass and gas
-    volume.  Returns the number of blocks mixed.
+    A block grows by one layer, down or up, as long as it is unstable against it at the
+    pressure of the face between them.  Returns the number of blocks mixed.
     """
-    count, tracers = values.shape
+    count = values.shape[0]
     blocks = 0
     f = 1
     while f < count:
-        if not _overturns(values, gas_mass, gas_volume, f - 1, f, face_pressure[f], contraction):
+        if not _overturns(
+            values, gas_mass, gas_volume, f - 1, f, face_pressure[f], contraction
+        ):
             f += 1
             continue
         blocks += 1
         top, foot = f - 1, f - 1
         total = volume[top]
-        for m in range(tracers):
-            mean[m] = values[top, m]
-        mean[tracers] = gas_mass[top]
-        mean[tracers + 1] = gas_volume[top]
+        theta, salt = values[top, 0], values[top, 1]
+        mass, space = gas_mass[top], gas_volume[top]
         growing = True
         while growing:
             growing = False
@@ -113,11 +123,8 @@ def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, mean)
                 nxt = foot + 1 if side == 0 else top - 1
                 if nxt < 0 or nxt >= count:
                     continue
-                face = foot + 1 if side == 0 else top
-                p = face_pressure[face]
-                block = parcel_density(
-                    mean[0], mean[1], p, mean[tracers], mean[tracers + 1], contraction
-                )
+                p = face_pressure[foot + 1 if side == 0 else top]
+                block = parcel_density(theta, salt, p, mass, space, contraction)
                 other = parcel_density(
                     values[nxt, 0],
                     values[nxt, 1],
@@ -127,12 +134,12 @@ def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, mean)
                     contraction,
                 )
                 if (other < block) if side == 0 else (other > block):
-                    share = volume[nxt] / (total + volume[nxt])
-                    for m in range(tracers):
-                        mean[m] += share * (values[nxt, m] - mean[m])
-                    mean[tracers] += share * (gas_mass[nxt] - mean[tracers])
-                    mean[tracers + 1] += share * (gas_volume[nxt] - mean[tracers + 1])
                     total += volume[nxt]
+                    share = volume[nxt] / total
+                    theta += share * (values[nxt, 0] - theta)
+                    salt += share * (values[nxt, 1] - salt)
+                    mass += share * (gas_mass[nxt] - mass)
+                    space += share * (gas_volume[nxt] - space)
                     if side == 0:
                         foot = nxt
                     else:

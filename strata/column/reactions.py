@@ -1,8 +1,8 @@
-"""What is made and used up in the water, each reaction solved for its extent so that none overdraws.
+"""What is made and used up in the water, each reaction by an extent that overdraws nothing.
 
-Oxidation of methane, CH4 + 2 O2 -> CO2 + 2 H2O (Monod in both); of sulfide, H2S + 2 O2 -> SO4 + 2 H
-(second order); respiration, O2 -> CO2 (Monod in oxygen); uptake and sinking of phosphate in the
-surface layer (first order).
+Oxidation of methane, CH4 + 2 O2 -> CO2 + 2 H2O (Monod in both); of sulfide, H2S + 2 O2 -> SO4
++ 2 H (second order); respiration, O2 -> CO2 (Monod in oxygen); uptake and sinking of phosphate
+in the surface layer (first order).
 """
 
 from strata.column.tracers import ALKALINITY, DIC, METHANE, OXYGEN, PHOSPHATE, SULFIDE
@@ -21,32 +21,41 @@ def _monod(amount, half):
 def _extent(limit, fuel, oxygen, per_oxygen, half_fuel, half_oxygen, second_order):
     """Return the extent x of a reaction in one step [mol m-3], with all amounts at its end.
 
-    Solves x = limit * f(fuel - x) * g(oxygen - per_oxygen x) by bisection and secant; f, g are
-    Monod shares, or the amounts themselves where ``second_order``.
+    Solves x = limit * f(fuel - x) * g(oxygen - per_oxygen x), f and g being Monod shares, or
+    the amounts themselves where ``second_order``.  The right side falls with x, so there is
+    one root; Newton's method from above, by bisection where it leaves the bracket.
     """
     low, high = 0.0, min(fuel, oxygen / per_oxygen)
-    for _ in range(60):
-        x = 0.5 * (low + high)
+    x = high
+    for _ in range(100):
         rest, air = fuel - x, oxygen - per_oxygen * x
         if second_order:
             rate = limit * rest * air
+            slope = 1.0 + limit * (air + per_oxygen * rest)
         else:
-            rate = limit * _monod(rest, half_fuel) * _monod(air, half_oxygen)
+            f, g = _monod(rest, half_fuel), _monod(air, half_oxygen)
+            rate = limit * f * g
+            slope = 1.0 + limit * (
+                g * half_fuel / (half_fuel + rest) ** 2
+                + per_oxygen * f * half_oxygen / (half_oxygen + air) ** 2
+            )
         if rate > x:
             low = x
         else:
             high = x
-        if high - low <= 1e-14 * high:
+        step = (x - rate) / slope
+        x = x - step if low <= x - step <= high else 0.5 * (low + high)
+        if abs(step) <= 1e-14 * high or high - low <= 1e-14 * high:
             break
-    return 0.5 * (low + high)
+    return x
 
 
 @compiled
 def react(values, rates, surface_depth, face, volume, dt, books):
     """Let the reactions of one step run and add what they changed to ``books`` (m).
 
-    ``rates`` is (largest methane oxidation, half methane, half oxygen, sulfide oxidation, oxygen
-    demand, phosphate removal), SI.
+    ``rates`` is (largest methane oxidation, half methane, half oxygen, sulfide oxidation,
+    oxygen demand, phosphate removal), SI.
     """
     for i in range(values.shape[0]):
         oxygen = values[i, OXYGEN]

@@ -47,7 +47,9 @@ def first_day(lake: Lake) -> Array:
     salinity = profiles["salinity"]
     means = {
         name: layer_means(
-            profile if len(profile.depth) >= len(salinity.depth) else between_samples(profile, salinity),
+            profile
+            if len(profile.depth) >= len(salinity.depth)
+            else between_samples(profile, salinity),
             basin.faces,
         )
         for name, profile in profiles.items()

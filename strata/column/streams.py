@@ -1,8 +1,8 @@
-"""Water that enters the column with a will of its own: springs, rivers and what plants put back.
+"""Water that enters the column: springs, rivers and what plants put back.
 
-Each is a *give*: some water with all it carries, what it takes along from the layers it passes as
-a plume, and the layers it ends in.  Takes and gives of a visit are stacked into the arrays of the
-kernel here.
+Each is a *give*: some water with all it carries, what it takes along from the layers it passes
+as a plume, and the layers it ends in.  Takes and gives of a visit are stacked into the arrays
+of the kernel here.
 """
 
 import math
@@ -107,7 +107,8 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
     )
     if code < 0:
         raise ComputationError(
-            f"the plume of {source.name} from {source.depth:g} m could not be followed (code {code})"
+            f"the plume of {source.name} from {source.depth:g} m could not be followed"
+            f" (code {code})"
         )
     above = float(given[around.basin.depth < source.depth].sum())
     return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code], above)
@@ -131,20 +132,41 @@ class Stacked:
     entrained: Array
     given: Array
     kind: NDArray[np.int64]
+    take_span: NDArray[np.int64]
+    plume_span: NDArray[np.int64]
+    give_span: NDArray[np.int64]
+
+
+def _spans(shares: Array) -> NDArray[np.int64]:
+    """Return for each row the first column that is not zero, and the one behind the last."""
+    spans = np.zeros((len(shares), 2), dtype=np.int64)
+    for row, share in enumerate(shares):
+        used = np.flatnonzero(share)
+        if len(used):
+            spans[row] = used[0], used[-1] + 1
+    return spans
 
 
 def stack(takes: Sequence[Array], gives: Sequence[Give], layers: int, tracers: int) -> Stacked:
     """Return takes [(n,) m3/s each] and gives as arrays; no take or give is an empty axis."""
+    take = np.array(takes).reshape(len(takes), layers)
+    entrained = np.array([give.entrained for give in gives]).reshape(len(gives), layers)
+    given = np.array([give.given for give in gives]).reshape(len(gives), layers)
     link = np.zeros((len(gives), len(takes), tracers))
+    added = np.zeros((len(gives), tracers))
     for k, give in enumerate(gives):
+        added[k, : len(give.added)] = give.added
         for j, share in give.link.items():
-            link[k, j] = share
+            link[k, j, : len(share)] = share
     return Stacked(
-        take=np.array(takes).reshape(len(takes), layers),
+        take=take,
         link=link,
-        added=np.array([give.added for give in gives]).reshape(len(gives), tracers),
+        added=added,
         water=np.array([give.water for give in gives], dtype=np.float64),
-        entrained=np.array([give.entrained for give in gives]).reshape(len(gives), layers),
-        given=np.array([give.given for give in gives]).reshape(len(gives), layers),
+        entrained=entrained,
+        given=given,
         kind=np.array([give.kind for give in gives], dtype=np.int64),
+        take_span=_spans(take),
+        plume_span=_spans(entrained),
+        give_span=_spans(given),
     )

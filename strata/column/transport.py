@@ -1,10 +1,10 @@
 """Carrying and spreading tracers: monotone advection and implicit diffusion in finite volumes.
 
-Advection is the piecewise parabolic method [CW84] in the volume coordinate: water that moves up
-the basin moves through volume, so a changing area needs no extra term.  The value at a face comes
-from the six nearest layers, by the derivative of the polynomial through their summed contents
-(fourth order where ``points=4``); weights are worked out once for uneven layers.  Diffusion is
-implicit and solved for the increment, which keeps the drift of mass at round-off.
+Advection is the piecewise parabolic method [CW84] in the volume coordinate: water that moves
+up the basin moves through volume, so a changing area needs no extra term.  The value at a face
+comes from the six nearest layers, by the derivative of the polynomial through their summed
+contents (fourth order where ``points=4``); weights are worked out once for uneven layers.
+Diffusion is implicit and solved for the increment, which keeps the drift of mass at round-off.
 
 [B85] Bank et al. 1985, IEEE Trans. Comput.-Aided Des. 4:436-451.
 [CW84] Colella & Woodward 1984, J. Comput. Phys. 54:174-201.
@@ -19,7 +19,8 @@ from strata.compiled import compiled
 
 Array = NDArray[np.float64]
 
-#: Share of the step that the trapezoidal part of TR-BDF2 takes: both parts then have one matrix.
+#: Share of the step that the trapezoidal part of TR-BDF2 takes: both parts then have one
+#: matrix.
 GAMMA = 2.0 - math.sqrt(2.0)
 #: Largest diffusion number K dt / dz^2 at which TR-BDF2 is used.
 DIFFUSION_NUMBER = 3.0
@@ -76,9 +77,9 @@ def _lagrange_slopes(nodes: Array, at: int) -> Array:
 def advect(values, flow, volume, weight, start, dt, edge, flux):
     """Move every tracer by the upward volume flow through the inner faces for one step.
 
-    ``values`` (n, m) is changed in place; ``flow`` (n + 1) [m3 s-1] is upward through the faces,
-    of which only the inner ones are used; ``edge`` and ``flux`` (n + 1, m) are workspace.
-    The flow out of a layer in one step must not exceed its volume.
+    ``values`` (n, m) is changed in place; ``flow`` (n + 1) [m3 s-1] is upward through the
+    faces, of which only the inner ones are used; ``edge`` and ``flux`` (n + 1, m) are
+    workspace. The flow out of a layer in one step must not exceed its volume.
     """
     count, tracers = values.shape
     points = weight.shape[1]
@@ -150,8 +151,9 @@ def _factor(conductance, volume, dt, ratio, pivot):
 def _solve(values, conductance, dt, explicit, ratio, pivot, change):
     """Turn ``change``, amounts already there, into the change of the values.
 
-    To what is there comes the gain by conduction over ``explicit`` seconds from ``values``; then
-    ``(volume + dt * conduction) change = that`` is solved with the factors of :func:`_factor`.
+    To what is there comes the gain by conduction over ``explicit`` seconds from ``values``;
+    then ``(volume + dt * conduction) change = that`` is solved with the factors of
+    :func:`_factor`.
     """
     count, tracers = values.shape
     for m in range(tracers):
@@ -176,10 +178,10 @@ def _solve(values, conductance, dt, explicit, ratio, pivot, change):
 def diffuse(values, conductance, volume, dt, work):
     """Spread every tracer for one step, second order in time where that stays positive.
 
-    TR-BDF2 [B85] while the largest diffusion number is at most 3, where a spike of one layer does
-    not undershoot; backward Euler beyond.  ``conductance`` (n + 1, m) is area times diffusivity
-    over distance at the faces [m3 s-1], of which only the inner ones are used; ``work``
-    (3, n, m) is workspace.
+    TR-BDF2 [B85] while the largest diffusion number is at most 3, where a spike of one layer
+    does not undershoot; backward Euler beyond.  ``conductance`` (n + 1, m) is area times
+    diffusivity over distance at the faces [m3 s-1], of which only the inner ones are used;
+    ``work`` (3, n, m) is workspace.
     """
     count, tracers = values.shape
     ratio, pivot, change = work[0], work[1], work[2]

@@ -59,8 +59,8 @@ def main() -> None:
         solve = time_of_lapack(layers * tracers)
         print(
             f"{'with' if plan else 'without'} plant: {layers} layers, {tracers} tracers:"
-            f" {1e6 * step:.1f} us a step, {1e6 * solve:.1f} us a dgtsv of {layers * tracers} rows,"
-            f" ratio {step / solve:.2f}"
+            f" {1e6 * step:.1f} us a step, {1e6 * solve:.1f} us a dgtsv of"
+            f" {layers * tracers} rows, ratio {step / solve:.2f}"
         )
 
 

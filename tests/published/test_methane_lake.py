@@ -1,8 +1,8 @@
-"""The methane lake of the literature: density, stability, saturation and inventory as published.
+"""The methane lake of the literature: density, stability, saturation, inventory as published.
 
-Sources: CTD data base of the lake (Doda, Schmid et al. 2024), mean of casts 2008-2022; gas of March
-2018 (Baerenbold et al. 2020, PLoS ONE 15(8):e0237836); hypsography recalled from memory, scaled to the
-published area, depth and volume (Schmid & Wuest 2012).
+Sources: CTD data base of the lake (Doda, Schmid et al. 2024), mean of casts 2008-2022; gas of
+March 2018 (Baerenbold et al. 2020, PLoS ONE 15(8):e0237836); hypsography recalled from memory,
+scaled to the published area, depth and volume (Schmid & Wuest 2012).
 """
 
 from pathlib import Path
@@ -53,7 +53,14 @@ def density(lake):
 
 @pytest.mark.parametrize(
     ("depth", "published"),
-    [(10, 998.00), (100, 999.12), (240, 999.89), (270, 1001.15), (350, 1001.83), (450, 1001.96)],
+    [
+        (10, 998.00),
+        (100, 999.12),
+        (240, 999.89),
+        (270, 1001.15),
+        (350, 1001.83),
+        (450, 1001.96),
+    ],
 )
 def test_density_is_that_of_the_lakes_data_base(lake, depth, published):
     # read off a plotted figure; gas between its depths to 5 %, 0.03 kg/m3 each
@@ -66,7 +73,9 @@ def test_density_is_that_of_the_lakes_data_base(lake, depth, published):
     # s-2; the mean cast smears the main gradient by 1-2 m
     [(250, 275, 4.5e-4, 0.15), (195, 240, 3.3e-5, 0.20)],
 )
-def test_stability_of_the_main_gradient_and_of_the_pool_above(lake, top, foot, published, share):
+def test_stability_of_the_main_gradient_and_of_the_pool_above(
+    lake, top, foot, published, share
+):
     pressure = AIR_PRESSURE + 1000.0 * GRAVITY * lake["depth"]
     squared, middle = strata.water.buoyancy_frequency_squared(
         lake["depth"],

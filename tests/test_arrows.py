@@ -9,7 +9,7 @@ import strata
 
 PACKAGE = Path(strata.__file__).parent
 
-SMALL = {"errors", "ranges", "compiled", "constants", "species"}
+SMALL = {"errors", "ranges", "compiled", "constants", "species", "randomness"}
 PHYSICS = {"water", "gas", "lake", "column", "plant"}
 DERIVED = {"gradients", "margins", "variables", "limits", "results"}
 
@@ -19,6 +19,7 @@ ALLOWED = {
     "caution": set(),
     "constants": set(),
     "compiled": set(),
+    "randomness": set(),
     "ranges": {"errors"},
     "species": {"constants", "errors", "ranges"},
     "water": SMALL,

@@ -8,8 +8,9 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from strata.errors import Fault, InputError
+from strata.errors import Fault, InputError, OutOfRangeError
 from strata.inputs import casts, checks, units
+from strata.inputs.climate_table import climate_faults, climate_of
 from strata.inputs.schema import LakeFile, WaterTable
 from strata.inputs.tables import Place, attributes, dotted, filled, show, validate
 from strata.inputs.texts import Texts
@@ -46,11 +47,22 @@ def build_lake(texts: Texts) -> site.Lake:
     faults += more
     floor = basin[0][-1] if basin else None
     faults += [Fault(file, place, message) for place, message in _cross_checks(sound, floor)]
+    latitude = sound.get("site", {}).get("latitude_deg")
+    faults += [
+        Fault(file, place, message)
+        for place, message in climate_faults(
+            document.get("climate"), sound.get("climate", {}), latitude
+        )
+    ]
     profiles, origins, more = _casts(sound, texts, floor)
     faults += more
     if faults or model is None or basin is None:
         raise InputError(faults)
-    lake = _assemble(model, basin, profiles, texts)
+    try:
+        climate = climate_of(model.climate, model.site)
+    except OutOfRangeError as error:
+        raise InputError([Fault(file, "climate", f"cannot be: {error}")]) from error
+    lake = _assemble(model, basin, profiles, climate, texts)
     checks.refuse_impossible_column(lake, origins)
     return lake
 
@@ -310,7 +322,11 @@ def _needed(
 
 
 def _assemble(
-    model: LakeFile, basin: Basin, profiles: dict[str, site.Profile], texts: Texts
+    model: LakeFile,
+    basin: Basin,
+    profiles: dict[str, site.Profile],
+    climate: site.Climate,
+    texts: Texts,
 ) -> site.Lake:
     """Build the frozen lake from what was found sound."""
     depth, area = (np.asarray(part, dtype=np.float64) for part in basin)
@@ -324,7 +340,7 @@ def _assemble(
         site=site.Site(**attributes(model.site, site.Site, laws=laws)),
         hypsography=site.Hypsography(depth, units.to_si("area_km2", area)),
         cast=site.Cast(profiles),
-        climate=site.Climate(**attributes(model.climate, site.Climate)),
+        climate=climate,
         springs=tuple(
             site.Spring(
                 **attributes(

@@ -72,14 +72,24 @@ class CastTable(Table):
 
 
 class ClimateTable(Table):
-    """``[climate]``: what the air does to the surface, month by month."""
+    """``[climate]``: what the air does to the surface, month by month.
 
-    equilibrium_temperature_degC: _months(-20, 45)  # type: ignore[valid-type]
-    exchange_coefficient_W_m2_K: _months(1, 200)  # type: ignore[valid-type]
+    Either how the surface answers (the first two keys), or the weather from which that
+    follows.
+    """
+
+    equilibrium_temperature_degC: _months(-20, 45) | None = None  # type: ignore[valid-type]
+    exchange_coefficient_W_m2_K: _months(1, 200) | None = None  # type: ignore[valid-type]
+    air_temperature_degC: _months(0, 40) | None = None  # type: ignore[valid-type]
+    dew_point_degC: _months(0, 35) | None = None  # type: ignore[valid-type]
+    sun_W_m2: _months(0, 450) | None = None  # type: ignore[valid-type]
+    cloud_share: _months(0, 1) | None = None  # type: ignore[valid-type]
     wind_speed_m_s: _months(0, 30)  # type: ignore[valid-type]
     rain_mm_day: _months(0, 100)  # type: ignore[valid-type]
-    evaporation_mm_day: _months(0, 50)  # type: ignore[valid-type]
+    evaporation_mm_day: _months(0, 50) | None = None  # type: ignore[valid-type]
     trend_degC_per_yr: Annotated[float, Between(-0.2, 0.2)] | None = None
+    temperature_variability_K: Annotated[float, Between(0, 5)] | None = None
+    wind_variability_share: Annotated[float, Between(0, 0.5)] | None = None
 
 
 class WaterTable(Table):

@@ -50,8 +50,8 @@ class Profile:
 class Cast:
     """What the surveyor measured.
 
-    Keys of ``profiles``: "temperature" (in situ), "salinity", "DIC" or "CO2" (free), "alkalinity"
-    or "pH", "calcium", "CH4", "N2", "O2", "H2S", "phosphate".
+    Keys of ``profiles``: "temperature" (in situ), "salinity", "DIC" or "CO2" (free),
+    "alkalinity" or "pH", "calcium", "CH4", "N2", "O2", "H2S", "phosphate".
     """
 
     profiles: Mapping[str, Profile]
@@ -66,7 +66,7 @@ class Spring:
     flow: float  # m3/s
     temperature: float  # degC, in situ
     salinity: float  # g/kg
-    dissolved: Mapping[str, float]  # mol/m3 by tracer name: DIC, alkalinity, CH4, phosphate, ...
+    dissolved: Mapping[str, float]  # mol/m3 by tracer: DIC, alkalinity, CH4, phosphate, ...
     ports: int = 1  # number of outlets it leaves by, each an entraining plume
     port_diameter: float = 1.0  # m
     port_spacing: float = 50.0  # m
@@ -104,6 +104,8 @@ class Climate:
     rain: Array  # m/s over the lake surface
     evaporation: Array  # m/s
     trend: float = 0.0  # degC per year, added to the equilibrium temperature
+    temperature_variability: float = 0.0  # K, standard deviation of a year's anomaly
+    wind_variability: float = 0.0  # share, standard deviation of a year's wind over its mean
 
 
 @dataclass(frozen=True)
@@ -129,12 +131,12 @@ class Mixing:
     wind_efficiency: float = 1.25  # of the wind's stirring (Kraus & Turner 1967)
     convection_efficiency: float = 0.2  # of the energy set free by cooling
     drag_coefficient: float = 1.3e-3
-    overshoot: float = 1.0  # share of the laboratory's entrainment where a plume overshoots (Baines 1975)
+    overshoot: float = 1.0  # times the laboratory's entrainment in overshoot (Baines 1975)
 
 
 @dataclass(frozen=True)
 class Lake:
-    """A site with its basin, casts, climate, supply and mixing: all that a projection needs."""
+    """A site with basin, casts, climate, supply and mixing: all that a projection needs."""
 
     site: Site
     hypsography: Hypsography
@@ -146,4 +148,4 @@ class Lake:
     reactions: Reactions
     mixing: Mixing
     layer_faces: Array  # m, faces of the layers from 0 to the deepest point
-    texts: Mapping[str, str] = field(default_factory=dict)  # input file name -> text, for the record
+    texts: Mapping[str, str] = field(default_factory=dict)  # input file -> text, for the record

@@ -148,4 +148,4 @@ class Lake:
     reactions: Reactions
     mixing: Mixing
     layer_faces: Array  # m, faces of the layers from 0 to the deepest point
-    texts: Mapping[str, str] = field(default_factory=dict)  # input file -> text, for the record
+    texts: Mapping[str, str] = field(default_factory=dict)  # input file -> text

@@ -24,7 +24,6 @@ ALLOWED = {
     "species": {"constants", "errors", "ranges"},
     "water": SMALL,
     "gas": SMALL | {"water"},
-    "randomness": set(),
     "lake": SMALL | {"water", "gas", "randomness"},
     "column": SMALL | {"water", "gas", "lake"},
     "plant": SMALL | {"water", "gas", "lake.site"},

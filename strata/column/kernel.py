@@ -361,7 +361,15 @@ def advance(state, grid, held, seen, steps, dt):
             held.air[2] * grid.area[0] * dt,
         )
         if _compare(values, grid, gas_mass, gas_volume, seen) > 0:
-            pool(values, gas_mass, gas_volume, grid.volume, grid.pressure, grid.physics[1])
+            pool(
+                values,
+                gas_mass,
+                gas_volume,
+                grid.volume,
+                grid.pressure,
+                grid.physics[1],
+                seen.stability,
+            )
         for i in range(count):
             for m in range(tracers):
                 if not np.isfinite(values[i, m]):

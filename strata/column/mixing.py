@@ -96,19 +96,26 @@ def pair_stability(
 
 
 @compiled
-def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction):
+def _heavier(theta, salt, mass, space, other, values, gas_mass, gas_volume, p, contraction):
+    """Return how much heavier a block is than layer ``other`` at a pressure [kg m-3]."""
+    return parcel_density(theta, salt, p, mass, space, contraction) - parcel_density(
+        values[other, 0], values[other, 1], p, gas_mass[other], gas_volume[other], contraction
+    )
+
+
+@compiled
+def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, stability):
     """Mix layers that lie heavier on lighter, exactly and conservatively, until none does.
 
-    A block grows by one layer, down or up, as long as it is unstable against it at the
-    pressure of the face between them.  Returns the number of blocks mixed.
+    ``stability`` is that of :func:`pair_stability` on this state.  A block grows by one layer,
+    down or up, as long as it is unstable against it at the pressure of the face between them.
+    Returns the number of blocks mixed.
     """
     count = values.shape[0]
     blocks = 0
     f = 1
     while f < count:
-        if not _overturns(
-            values, gas_mass, gas_volume, f - 1, f, face_pressure[f], contraction
-        ):
+        if stability[f] >= 0.0:
             f += 1
             continue
         blocks += 1
@@ -119,31 +126,35 @@ def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction):
         growing = True
         while growing:
             growing = False
-            for side in range(2):
-                nxt = foot + 1 if side == 0 else top - 1
-                if nxt < 0 or nxt >= count:
-                    continue
-                p = face_pressure[foot + 1 if side == 0 else top]
-                block = parcel_density(theta, salt, p, mass, space, contraction)
-                other = parcel_density(
-                    values[nxt, 0],
-                    values[nxt, 1],
-                    p,
-                    gas_mass[nxt],
-                    gas_volume[nxt],
-                    contraction,
-                )
-                if (other < block) if side == 0 else (other > block):
+            for sign in (1, -1):
+                nxt = foot + 1 if sign > 0 else top - 1
+                while 0 <= nxt < count:
+                    p = face_pressure[nxt if sign > 0 else nxt + 1]
+                    excess = _heavier(
+                        theta,
+                        salt,
+                        mass,
+                        space,
+                        nxt,
+                        values,
+                        gas_mass,
+                        gas_volume,
+                        p,
+                        contraction,
+                    )
+                    if sign * excess <= 0.0:
+                        break
                     total += volume[nxt]
                     share = volume[nxt] / total
                     theta += share * (values[nxt, 0] - theta)
                     salt += share * (values[nxt, 1] - salt)
                     mass += share * (gas_mass[nxt] - mass)
                     space += share * (gas_volume[nxt] - space)
-                    if side == 0:
+                    if sign > 0:
                         foot = nxt
                     else:
                         top = nxt
+                    nxt += sign
                     growing = True
         settle(values, gas_mass, gas_volume, volume, top, foot)
         f = foot + 1
@@ -171,13 +182,3 @@ def settle(values, gas_mass, gas_volume, volume, top, foot):
             content += array[i] * volume[i]
         for i in range(top, foot + 1):
             array[i] = content / total
-
-
-@compiled
-def _overturns(values, gas_mass, gas_volume, upper, lower, p, contraction):
-    """Return whether layer ``upper`` is heavier than ``lower`` at a pressure [Pa]."""
-    return parcel_density(
-        values[upper, 0], values[upper, 1], p, gas_mass[upper], gas_volume[upper], contraction
-    ) > parcel_density(
-        values[lower, 0], values[lower, 1], p, gas_mass[lower], gas_volume[lower], contraction
-    )

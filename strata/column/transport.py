@@ -187,9 +187,10 @@ def diffuse(values, conductance, volume, dt, work):
     ratio, pivot, change = work[0], work[1], work[2]
     largest = 0.0
     for f in range(1, count):
-        least = min(volume[f - 1], volume[f])
-        for m in range(tracers):
-            largest = max(largest, conductance[f, m] / least)
+        most = conductance[f, 0]
+        for m in range(1, tracers):
+            most = max(most, conductance[f, m])
+        largest = max(largest, most / min(volume[f - 1], volume[f]))
     change[:, :] = 0.0
     if largest * dt > DIFFUSION_NUMBER:
         _factor(conductance, volume, dt, ratio, pivot)

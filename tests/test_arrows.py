@@ -44,7 +44,7 @@ ALLOWED = {
     "clock": SMALL,
     "coupling": SMALL | PHYSICS | {"clock"},
     "projection": SMALL | PHYSICS | {"clock", "coupling", "results"},
-    "inputs": SMALL | PHYSICS | {"limits", "margins"},
+    "inputs": SMALL | PHYSICS | {"limits", "margins", "gradients"},
     "studies": SMALL | PHYSICS | DERIVED | {"coupling", "projection"},
     "report": SMALL | PHYSICS | DERIVED | {"caution"},
     "cli": SMALL | DERIVED | {"caution", "inputs", "projection", "studies", "report"},

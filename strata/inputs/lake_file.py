@@ -11,7 +11,8 @@ from numpy.typing import NDArray
 from strata.errors import Fault, InputError, OutOfRangeError
 from strata.inputs import casts, checks, units
 from strata.inputs.climate_table import climate_faults, climate_of
-from strata.inputs.schema import LakeFile, WaterTable
+from strata.inputs.grid_table import grid_faults, with_chosen_layers
+from strata.inputs.schema import GridTable, LakeFile, WaterTable
 from strata.inputs.tables import Place, attributes, dotted, filled, show, validate
 from strata.inputs.texts import Texts
 from strata.lake import site
@@ -64,7 +65,22 @@ def build_lake(texts: Texts) -> site.Lake:
         raise InputError([Fault(file, "climate", f"cannot be: {error}")]) from error
     lake = _assemble(model, basin, profiles, climate, texts)
     checks.refuse_impossible_column(lake, origins)
-    return lake
+    return _choose_layers(lake, model.grid, file) if model.grid.automatic else lake
+
+
+def _choose_layers(lake: site.Lake, grid: GridTable, file: str) -> site.Lake:
+    """Return a lake with layers chosen from its casts."""
+    chosen = with_chosen_layers(lake, grid)
+    if chosen is None:
+        message = "finds no gradient in the casts; give zones instead"
+        raise InputError([Fault(file, "grid.automatic", message)])
+    faults = [
+        Fault(file, place, message)
+        for place, message in _layer_count(len(chosen.layer_faces) - 1, grid.layer_m)
+    ]
+    if faults:
+        raise InputError(faults)
+    return chosen
 
 
 # What the basin is --------------------------------------------------------------------------
@@ -148,14 +164,20 @@ def _cross_checks(sound: Mapping[str, Any], floor: float | None) -> Iterator[tup
     for number, source in enumerate(sound.get("bed", [])):
         yield from _bed_flux(dotted(sound, ("bed", number)), source)
     grid = sound.get("grid", {})
-    if floor is not None and "layer_m" in grid:
-        count = len(layer_faces(floor, grid["layer_m"], _zones(grid))) - 1
-        if not FEWEST_LAYERS <= count <= MOST_LAYERS:
-            yield (
-                "grid.layer_m",
-                f"is {grid['layer_m']:g} and gives {count} layers; {FEWEST_LAYERS} to "
-                f"{MOST_LAYERS} layers are allowed",
-            )
+    yield from grid_faults(grid)
+    if floor is not None and "layer_m" in grid and not grid.get("automatic", False):
+        faces = layer_faces(floor, grid["layer_m"], _zones(grid))
+        yield from _layer_count(len(faces) - 1, grid["layer_m"])
+
+
+def _layer_count(count: int, thickness: float) -> Iterator[tuple[str, str]]:
+    """Find whether there are too few layers, or too many."""
+    if not FEWEST_LAYERS <= count <= MOST_LAYERS:
+        yield (
+            "grid.layer_m",
+            f"is {thickness:g} and gives {count} layers; {FEWEST_LAYERS} to "
+            f"{MOST_LAYERS} layers are allowed",
+        )
 
 
 def same_names(document: Mapping[str, Any], array: str) -> Iterator[tuple[str, str]]:

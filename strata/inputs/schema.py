@@ -184,9 +184,17 @@ class ZoneTable(Table):
 
 
 class GridTable(Table):
-    """``[grid]``: thickness of the layers, and where it is another."""
+    """``[grid]``: thickness of the layers, and where it is another.
+
+    ``automatic`` puts thin layers around the gradients that the casts show, ``thin_m`` on the
+    way of the main one, which reaches ``way_above_m`` over and ``way_below_m`` under it.
+    """
 
     layer_m: Annotated[float, Between(0.1, 50)]
+    automatic: bool = False
+    thin_m: Annotated[float, Between(0.1, 20)] | None = None
+    way_above_m: Annotated[float, Between(0, 1000)] | None = None
+    way_below_m: Annotated[float, Between(0, 1000)] | None = None
     zone: list[ZoneTable] = Field(default_factory=list)
 
 

@@ -44,8 +44,8 @@ def remap(values: Array, old: Basin, new: Basin) -> Array:
     above_new = np.concatenate([[0.0], np.cumsum(new.volume)])
     if abs(above_new[-1] - above_old[-1]) > SAME * above_old[-1]:
         raise OutOfRangeError(
-            f"the new layers hold {above_new[-1]:.6g} m3; {above_old[-1]:.6g} m3, as in the old"
-            " ones, is allowed"
+            f"the new layers hold {above_new[-1]:.6g} m3; {above_old[-1]:.6g} m3, as in the"
+            " old ones, is allowed"
         )
     above_new *= above_old[-1] / above_new[-1]
     top, foot = _edges(values, old.volume)

@@ -62,7 +62,7 @@ def water(
     temperature = broadcast(in_situ_temperature)(potential, pressure)
     carbonate = speciate(temperature, salinity, dic, alkalinity, pressure)
     gases = {gas: values[..., tracers.index(gas)] for gas in ("CH4", "N2", "O2", "H2S")}
-    argon = argon_of_nitrogen(temperature, salinity, site.air_pressure)
+    argon = argon_of_nitrogen(temperature, salinity)
     gases |= {"CO2": carbonate.co2, "Ar": argon * gases["N2"]}
     mass, volume = gas_mass_and_volume(gases, site.co2_molar_volume)
 

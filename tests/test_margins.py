@@ -8,7 +8,7 @@ import synthetic
 
 from strata import margins
 from strata.gas import bubble_point
-from strata.gas.air import argon_of_nitrogen
+from strata.gas.air import argon_of_nitrogen, sea_water_equilibrium
 from strata.water import buoyancy_frequency_squared
 from strata.water.stability import mixed_layer_depth
 
@@ -171,7 +171,7 @@ def test_state_gives_what_the_formulas_give_for_the_same_water():
     )
     layer = 60
     water = (found["temperature"][0, layer], record.of("salinity")[0, layer])
-    share = argon_of_nitrogen(*water, lake.site.air_pressure)
+    share = argon_of_nitrogen(*water)
     nitrogen = record.of("N2")[0, layer]
     gases = {
         "CH4": record.of("CH4")[0, layer],
@@ -212,3 +212,10 @@ def test_stability_agrees_with_the_formula_for_casts():
     inner = found["buoyancy_frequency_squared"][0, 1:-1]
     # gravity of the latitude, and argon, are the only differences
     np.testing.assert_allclose(inner, expected, atol=0.004 * expected.max())
+
+
+def test_argon_goes_with_nitrogen_in_the_step_that_the_air_sets():
+    # Hamme & Emerson 2004 for fresh water; the Ar of G7-04 is up to 0.9 % more soluble
+    water = np.array([5.0, 15.0, 25.0]), 0.0
+    ratio = sea_water_equilibrium("Ar", *water) / sea_water_equilibrium("N2", *water)
+    np.testing.assert_allclose(argon_of_nitrogen(*water), ratio, rtol=0.011)

@@ -81,12 +81,16 @@ def equilibrium(
     return result
 
 
-def argon_of_nitrogen(
-    temperature: ArrayLike, salinity: ArrayLike, air_pressure: ArrayLike
-) -> Array:
-    """Return the ratio Ar to N2 [mol/mol] of water at equilibrium with air; see above."""
-    argon = equilibrium("Ar", temperature, salinity, air_pressure)
-    return argon / equilibrium("N2", temperature, salinity, air_pressure)
+def argon_of_nitrogen(temperature: ArrayLike, salinity: ArrayLike = 0.0) -> Array:
+    r"""Return the ratio Ar to N2 [mol/mol] of water at equilibrium with air of any pressure.
+
+    .. math:: \frac{x_{Ar}\,k_{N_2}(T, S)}{x_{N_2}\,k_{Ar}(T, S)}
+
+    Lakes are sampled for nitrogen and not for argon; everywhere in strata argon goes in this
+    step with the nitrogen.
+    """
+    henry = [henry_constant(gas, temperature, salinity) for gas in ("N2", "Ar")]
+    return np.asarray(DRY_AIR["Ar"] / DRY_AIR["N2"] * henry[0] / henry[1])
 
 
 def sea_water_equilibrium(gas: str, temperature: ArrayLike, salinity: ArrayLike) -> Array:

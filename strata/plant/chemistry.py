@@ -13,9 +13,10 @@ from typing import Any
 import numpy as np
 
 from strata.compiled import compiled
-from strata.constants import ATMOSPHERE, DRY_AIR, GAS_CONSTANT, ZERO_CELSIUS
+from strata.constants import ATMOSPHERE, GAS_CONSTANT, ZERO_CELSIUS
 from strata.errors import ComputationError, OutOfRangeError
-from strata.gas import Laws, henry_constant
+from strata.gas import Laws
+from strata.gas.air import argon_of_nitrogen
 from strata.gas.bubble import bubble_rows
 from strata.gas.carbonate import (
     carbonate_constants,
@@ -63,11 +64,9 @@ def table_of(site: Site) -> GasTable:
 
 
 @lru_cache(maxsize=256)
-def argon_share(temperature: float) -> float:
-    """Return the moles of argon per mole of nitrogen in air-saturated water, to 0.1 K."""
-    at = round(temperature, 1)
-    ratio = henry_constant("N2", at) / henry_constant("Ar", at)
-    return float(DRY_AIR["Ar"] / DRY_AIR["N2"] * ratio)
+def _argon(tenths: int) -> float:
+    """Return argon per nitrogen at tenths of a degree, between which it changes by 0.02 %."""
+    return float(argon_of_nitrogen(0.1 * tenths))
 
 
 @compiled
@@ -107,7 +106,7 @@ def free_gases(water: WaterStream, site: Site, pressure: float = ATMOSPHERE) -> 
             "CH4": water.of("CH4"),
             "CO2": co2,
             "N2": nitrogen,
-            "Ar": nitrogen * argon_share(water.temperature),
+            "Ar": nitrogen * _argon(round(10.0 * water.temperature)),
             "O2": water.of("O2"),
             "H2S": water.of("H2S") * share,
         },

@@ -155,6 +155,20 @@ def test_two_towers_with_half_the_water_each_are_two_washes():
     )
 
 
+@pytest.mark.parametrize("stages", [2, 6, 20])
+def test_a_tower_is_solved_through_its_pinch(stages):
+    # where the water just takes the CO2 (here 3.5 m3/s) all stages hang together; up to there
+    # more water leaves less gas, beyond it takes little more than methane
+    raw = GasStream({"CH4": 200.0, "CO2": 750.0, "N2": 6.0, "H2S": 0.5}, 24.0, 8e5)
+    flows = np.linspace(0.5, 8.0, 31)
+    left = [
+        wash_gas(Wash(8e5, 1.0, 60.0, stages), raw, replace(SHALLOW, flow=flow), SITE).gas
+        for flow in flows
+    ]
+    assert (np.diff([gas.dry for gas in left]) < 0).all()
+    assert (np.diff([gas.of("CH4") for gas in left]) < 0).all()
+
+
 def test_water_that_takes_up_all_the_gas_is_refused_in_words():
     with pytest.raises(ComputationError, match="take up all"):
         wash_gas(Wash(10e5, 1.0, 0.0, 4), replace(RAW, flows={"CO2": 1.0}), SHALLOW, SITE)

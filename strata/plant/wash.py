@@ -1,16 +1,19 @@
 r"""The wash tower: raw gas rises against water that takes CO2 and H2S, and a little CH4.
 
-Counter-current stages, numbered from the top, at one temperature and pressure.  With the gas
-flow G on each stage held, the balances of each gas are one tridiagonal system (the sum-rates
-method of Burningham & Otto 1967),
+Counter-current stages, numbered from the top, at one temperature and pressure.  The balance
+and the equilibrium of each gas on each stage,
 
 .. math:: g_{j+1} + L c_{j-1} = g_j + L c_j, \qquad
-          \frac{g_j}{G_j} = (1 - E) \frac{g_{j+1}}{G_{j+1}} + E\, K_j\, (c_j - b_j)
+          y_j = (1 - E)\, y_{j+1} + E\, K_j\, (c_j - b_j), \qquad
+          y_j = (1 - y_{H_2O}) \frac{g_j}{\sum g_j}
 
 with the efficiency E of Murphree (1925) and what is bound in the water, b (bicarbonate and
-carbonate of DIC, HS of sulphide).  The sums give new G, the composition new fugacity
-coefficients, the DIC new b, until nothing changes.  Water that enters the gas as vapour is not
-taken off L.  Absorption heats the water by less than 0.2 K, which is left out.
+carbonate of DIC; of sulphide, HS lowers K).  With the other gases held, that is one
+tridiagonal system for a Newton step in the flows of one gas, CO2 being most of what changes
+the gas flow; each gas in turn, then new fugacity coefficients and b, until nothing changes.
+(To hold the gas flow instead, as the sum-rates method of Burningham & Otto (1967) does,
+swings near the pinch of a tower.)  Water that enters the gas as vapour is not taken off L.
+Absorption heats the water by less than 0.2 K, which is left out.
 """
 
 import math
@@ -32,43 +35,57 @@ from strata.plant.plan import Wash
 from strata.plant.streams import GasStream, WaterStream, joined_water
 from strata.species import LAKE_GASES, VAPOUR
 
-_MOST_ROUNDS = 2000
-_SETTLED = 1e-13
+_MOST_ROUNDS = 300
+_SETTLED = 1e-13  # change of a flow over the gas that enters
 
 
 @compiled
-def _stage_balances(gas, total, feed_gas, feed_total, water, feed, bound, k, efficiency, work):
-    """Solve the flows of one gas on all stages for held totals (Thomas algorithm).
+def _stage_balances(gas, i, vapour, gas_in, water, feed, bound, k, efficiency, work):
+    """Take one Newton step in the flows of gas i on all stages, the other gases held.
 
-    gas [mol/s] is filled; total are gas flows of stages; feed is what enters the top per m3 of
-    water; bound what does not take part; k the equilibrium factor of each stage.
+    gas [mol/s] is (stages, gases); feed is what enters the top per m3 of water; bound what
+    does not take part; k the equilibrium factor of each stage.  The mole fraction of a stage,
+    ``y = (1 - vapour) g_i / sum(g)``, is its tangent in g_i; the steps make one tridiagonal
+    system (Thomas algorithm).  Returns the largest change over the gas that enters.
     """
-    n = gas.size
-    upper, right = work[0], work[1]
+    n = gas.shape[0]
+    upper, right = work
+    entering = gas_in.sum()
+    before, lower, above = water * feed, 0.0, 0.0  # what comes down from the stage above
     for j in range(n):
-        a = water / (efficiency * k[j] * total[j])
-        below = total[j + 1] if j + 1 < n else feed_total
-        b = water * (1.0 - efficiency) / (efficiency * k[j] * below)
-        lower = 0.0
-        diagonal = -(1.0 + a)
-        rhs = water * bound[j]
-        if j == 0:
-            rhs -= water * feed
+        dry = gas[j].sum()
+        share = gas[j, i] / dry
+        slope = (1.0 - vapour[j]) * (1.0 - share) / dry
+        offset = (1.0 - vapour[j]) * share * share
+        if j + 1 < n:
+            dry = gas[j + 1].sum()
+            share = gas[j + 1, i] / dry
+            slope_below = (1.0 - vapour[j + 1]) * (1.0 - share) / dry
+            offset -= (1.0 - efficiency) * (1.0 - vapour[j + 1]) * share * share
         else:
-            lower = water / (efficiency * k[j - 1] * total[j - 1])
-            diagonal -= water * (1.0 - efficiency) / (efficiency * k[j - 1] * total[j])
-            rhs -= water * bound[j - 1]
-        above = 1.0 + b
+            slope_below = 1.0 / entering
+        factor = water / (efficiency * k[j])
+        held = water * bound[j] + factor * offset
+        diagonal = -(1.0 + factor * slope) - above
+        rhs = held - before
+        before = held
+        above_here = 1.0 + factor * (1.0 - efficiency) * slope_below
         if j + 1 == n:
-            rhs -= above * feed_gas
+            rhs -= above_here * gas_in[i]
         if j > 0:
             diagonal -= lower * upper[j - 1]
             rhs -= lower * right[j - 1]
-        upper[j] = above / diagonal
+        upper[j] = above_here / diagonal
         right[j] = rhs / diagonal
-    gas[n - 1] = right[n - 1]
-    for j in range(n - 2, -1, -1):
-        gas[j] = right[j] - upper[j] * gas[j + 1]
+        above = factor * (1.0 - efficiency) * slope_below
+        lower = factor * slope
+    change, flow = 0.0, 0.0
+    for j in range(n - 1, -1, -1):
+        flow = right[j] - upper[j] * flow if j + 1 < n else right[j]
+        old = gas[j, i]
+        gas[j, i] = max(flow, 0.1 * old)  # a tangent may overshoot nil; the next one does not
+        change = max(change, abs(gas[j, i] - old) / entering)
+    return change
 
 
 @compiled
@@ -98,34 +115,33 @@ def _look_at_stages(
 ):
     """Refresh what is bound and the equilibrium of every stage from the flows on it.
 
-    state is (gas [mol/s], total, vapour share, bound, k), all by stage; table (rows, pairs,
-    laws).  Returns False where the water would boil.
+    state is (gas [mol/s], vapour share, bound, k), all by stage; table (rows, pairs, laws).
+    Returns False where the water would boil.
     """
-    gas, total, vapour, bound, k = state
+    gas, vapour, bound, k = state
     stages, n = gas.shape
     inner, concentration, y, one_k = work
     h = 1e-4
     for j in range(stages):
-        around = 1.0
+        dry = gas[j].sum()
         for i in range(n):
             below = gas[j + 1, i] if j + 1 < stages else gas_in[i]
             concentration[i] = max(feed[i] + (below - gas[0, i]) / water, 0.0)
-            y[i] = gas[j, i] / total[j]
-            around -= y[i]
-        y[n] = max(around, 0.0)
+            y[i] = (1.0 - vapour[j]) * gas[j, i] / dry
+        y[n] = vapour[j]
         if alk > 0.0:
             free, h = free_co2(
                 concentration[carbon], alk, constants[0], constants[1], constants[2], h
             )
             bound[carbon, j] = concentration[carbon] - free
             concentration[carbon] = free
-        bound[acid, j] = concentration[acid] * sulfide
-        concentration[acid] -= bound[acid, j]
+        concentration[acid] *= 1.0 - sulfide
         vapour[j] = _equilibrium(
             t, s, alk, p, concentration, y, table[0], table[1], table[2], one_k, inner
         )
         if not vapour[j] < 1.0:
             return False
+        one_k[acid] *= 1.0 - sulfide
         for i in range(n):
             k[i, j] = one_k[i]
     return True
@@ -138,22 +154,18 @@ def _climb_tower(
     """Fill gas (stages, gases) [mol/s]; return the vapour share at the top and rounds or -1.
 
     feed [mol m-3] is what enters with the water, totals of DIC and sulphide among it;
-    sulfide is the share of sulphide that is HS and takes no part.
+    sulfide is the share of sulphide that is HS and does not press.
     """
     stages, n = gas.shape
-    total, vapour = np.empty(stages), np.zeros(stages)
-    bound, k = np.zeros((n, stages)), np.empty((n, stages))
     m = n + 1
     inner = (np.empty(m), np.empty(m), np.empty(m), np.empty(m), np.empty(m))
     work = (inner, np.empty(n), np.empty(m), np.empty(n))
     sweep = (np.empty(stages), np.empty(stages))
-    flows = np.empty(stages)
     constants = carbonate_constants(t, ionic_strength_of(s, alk, ions[0], ions[1]), p)
-    feed_total = gas_in.sum()
-    total[:] = feed_total
     for j in range(stages):
         gas[j] = gas_in
-    state = (gas, total, vapour, bound, k)
+    vapour = np.zeros(stages)
+    state = (gas, vapour, np.zeros((n, stages)), np.empty((n, stages)))
     for rounds in range(_MOST_ROUNDS):
         if not _look_at_stages(
             t,
@@ -172,27 +184,23 @@ def _climb_tower(
             work,
         ):
             return vapour[0], -1
+        change = 0.0
         for i in range(n):
-            _stage_balances(
-                flows,
-                total,
-                gas_in[i],
-                feed_total,
+            one = _stage_balances(
+                gas,
+                i,
+                vapour,
+                gas_in,
                 water,
                 feed[i],
-                bound[i],
-                k[i],
+                state[2][i],
+                state[3][i],
                 efficiency,
                 sweep,
             )
-            gas[:, i] = flows
-        change = 0.0
-        for j in range(stages):
-            new = gas[j].sum() / (1.0 - vapour[j])
-            if not new > 0.0:
-                return vapour[0], -1
-            change = max(change, abs(new - total[j]) / total[j])
-            total[j] = new
+            change = max(change, one)
+        if not gas[0].sum() > 1e-9 * gas_in.sum():
+            return vapour[0], -1
         if change < _SETTLED:
             return vapour[0], rounds
     return vapour[0], -1

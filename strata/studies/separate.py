@@ -36,6 +36,8 @@ FREE, BOUND = "CO2 free", "CO2 bound"
 OUTCOMES = {
     "recovery": ("1", "methane in the product over methane in the feed"),
     "purity": ("1", "mole fraction of methane in the dry product"),
+    "carbon_dioxide_share": ("1", "mole fraction of CO2 in the dry product"),
+    "nitrogen_share": ("1", "mole fraction of N2 in the dry product"),
     "heating_value": ("J m-3", "lower heating value of the dry product, normal m3"),
     "wobbe_index": ("J m-3", "lower Wobbe index of the dry product, normal m3"),
     "net_energy": ("J m-3", "electric energy left per m3 of feed"),
@@ -52,27 +54,12 @@ OUTCOMES = {
     "return_ph": ("1", "pH of the return water"),
     "lime": ("mol m-3", "lime used per m3 of feed"),
 }
-#: Aim -> (outcome, what it says of its best pressure at either end of the range and inside).
+#: Aim -> the outcome of which there should be most.
 AIMS = {
-    "recovery": (
-        "recovery",
-        "the lower the pressure, the less methane stays in the water",
-    ),
-    "heating value": (
-        "heating_value",
-        "methane leaves the water before CO2 and after nitrogen; what keeps CO2 in the water"
-        " makes the gas rich",
-    ),
-    "net energy": (
-        "net_energy",
-        "vacuum and pumping cost more towards one side, methane left in the water towards the"
-        " other",
-    ),
-    "return density": (
-        "return_density_excess",
-        "CO2 kept in the water makes it heavy, methane kept makes it light, and evaporation"
-        " under vacuum cools it",
-    ),
+    "recovery": "recovery",
+    "heating value": "heating_value",
+    "net energy": "net_energy",
+    "return density": "return_density_excess",
 }
 
 
@@ -127,6 +114,8 @@ def outcome(setting: Setting, plant: Plant) -> dict[str, float]:
     return {
         "recovery": run.recovery,
         "purity": run.product.share("CH4") if some else np.nan,
+        "carbon_dioxide_share": run.product.share("CO2") if some else np.nan,
+        "nitrogen_share": run.product.share("N2") if some else np.nan,
         "heating_value": power.heating_value(run.product) if some else np.nan,
         "wobbe_index": power.wobbe_index(run.product) if some else np.nan,
         "net_energy": used["net"] * per_volume,
@@ -180,7 +169,10 @@ def _dataset(
 
 
 def default_pressures(setting: Setting, count: int = 60) -> Array:
-    """Return pressures [Pa] from 0.05 bar to just below where gas comes out, or 10 bar."""
+    """Return pressures [Pa] from 0.05 bar to just below where gas comes out, or 10 bar.
+
+    That of the air is among them, as vacuum pumps begin below it and pumping above.
+    """
     site, feed = setting.column.lake.site, setting.feed
     gases = free_gases(feed, site).gases
     onset = float(bubble_point(feed.temperature, feed.salinity, gases, laws_of(site)).pressure)
@@ -190,7 +182,11 @@ def default_pressures(setting: Setting, count: int = 60) -> Array:
             f"plant {setting.plant.name}: its feed has {onset / 1e5:.2f} bar of gas pressure;"
             " there is nothing to separate"
         )
-    return np.geomspace(0.05e5, highest, count)
+    pressures = np.geomspace(0.05e5, highest, count)
+    if site.air_pressure < highest:
+        nearest = int(np.argmin(np.abs(np.log(pressures / site.air_pressure))))
+        pressures[nearest] = site.air_pressure
+    return pressures
 
 
 def _one_stage(plant: Plant, pressure: float, lime: Lime | None) -> Plant:
@@ -249,24 +245,25 @@ def separate(
     sweep = _dataset(
         (len(limes), len(swept)), ("case", "pressure"), coords, found, setting.plant.name
     )
-    return sweep.merge(_best(sweep), combine_attrs="override")
+    best = _best(sweep, setting.column.lake.site.air_pressure)
+    return sweep.merge(best, combine_attrs="override")
 
 
-def _best(sweep: xr.Dataset) -> xr.Dataset:
+def _best(sweep: xr.Dataset, air_pressure: float) -> xr.Dataset:
     """Return the best pressure of each case for each aim, and why it is best."""
     pressures = sweep["pressure"].values
     best = np.full((sweep.sizes["case"], len(AIMS)), np.nan)
     why = np.full(best.shape, "", dtype=object)
     for i, case in enumerate(sweep["case"].values):
-        for k, (aim, (name, reason)) in enumerate(AIMS.items()):
-            values = sweep[name].sel(case=case).values
+        one = sweep.sel(case=case)
+        for k, (aim, name) in enumerate(AIMS.items()):
+            values = one[name].values
             if not np.isfinite(values).any():
                 continue
             at = int(np.nanargmax(values))
             best[i, k] = pressures[at]
-            why[i, k] = f"{_where(at, len(pressures))}: {reason}" + _flat(values, at)
-            if aim == "net energy":
-                why[i, k] += _turning(sweep.sel(case=case), at)
+            where = "that of the air" if pressures[at] == air_pressure else _where(at, values)
+            why[i, k] = f"{where}: {_REASONS[aim](one, at)}{_flat(values, at)}"
     return xr.Dataset(
         {
             "best_pressure": (
@@ -274,19 +271,17 @@ def _best(sweep: xr.Dataset) -> xr.Dataset:
                 best,
                 {"units": "Pa", "long_name": "best separator pressure"},
             ),
-            "why": (("case", "aim"), why.astype(str)),
+            "why": (("case", "aim"), why.astype(str), {"long_name": "why it is best"}),
         },
         {"aim": list(AIMS)},
     )
 
 
-def _where(at: int, count: int) -> str:
+def _where(at: int, values: Array) -> str:
     """Say where in the range the best lies."""
     if at == 0:
-        return "best at the lowest pressure looked at"
-    if at == count - 1:
-        return "best at the highest pressure looked at"
-    return "best inside the range"
+        return "lowest looked at"
+    return "highest looked at" if at == len(values) - 1 else "inside the range"
 
 
 def _flat(values: Array, at: int) -> str:
@@ -297,15 +292,55 @@ def _flat(values: Array, at: int) -> str:
     return ""
 
 
-def _turning(case: xr.Dataset, at: int) -> str:
-    """Say what is lost on either side of the best net energy."""
+def _why_recovery(case: xr.Dataset, at: int) -> str:
+    """Say what methane stays in the water."""
+    left = 100.0 * (1.0 - case["recovery"].values)
+    return (
+        f"the lower the pressure, the less methane stays in the water ({left[at]:.1f} %;"
+        f" {left[-1]:.0f} % at the highest)"
+    )
+
+
+def _why_heating_value(case: xr.Dataset, at: int) -> str:
+    """Say what dilutes the gas."""
+    carbon, nitrogen = (
+        100.0 * case[f"{gas}_share"].values for gas in ("carbon_dioxide", "nitrogen")
+    )
+    return (
+        "pressure keeps CO2 in the water longer than methane, and nitrogen less long: the gas"
+        f" holds {carbon[at]:.0f} % CO2 and {nitrogen[at]:.1f} % N2 there,"
+        f" {carbon[0]:.0f} and {nitrogen[0]:.1f} at the lowest,"
+        f" {carbon[-1]:.0f} and {nitrogen[-1]:.1f} at the highest"
+    )
+
+
+def _why_net_energy(case: xr.Dataset, at: int) -> str:
+    """Say what is lost on either side."""
     made = case["electric_energy"].values / 1e6
     used = made - case["net_energy"].values / 1e6
     return (
+        "vacuum pumps cost more below, methane left in the water and pumping more above"
         f" (made {made[at]:.2f}, used {used[at]:.2f} MJ/m3 there; {made[0]:.2f} and"
-        f" {used[0]:.2f} at the lowest pressure, {made[-1]:.2f} and"
-        f" {used[-1]:.2f} at the highest)"
+        f" {used[0]:.2f} at the lowest, {made[-1]:.2f} and {used[-1]:.2f} at the highest)"
     )
+
+
+def _why_return_density(case: xr.Dataset, at: int) -> str:
+    """Say what makes the return water heavy or light."""
+    excess = case["return_density_excess"].values
+    return (
+        "CO2 kept in the water makes it heavy, methane kept makes it light, and evaporation"
+        f" under vacuum cools it ({excess[at]:+.2f} kg/m3 against the lake at its outlet;"
+        f" {excess[0]:+.2f} at the lowest, {excess[-1]:+.2f} at the highest)"
+    )
+
+
+_REASONS = {
+    "recovery": _why_recovery,
+    "heating value": _why_heating_value,
+    "net energy": _why_net_energy,
+    "return density": _why_return_density,
+}
 
 
 def separate_in_two(

@@ -5,7 +5,7 @@ all else the amount added.  The kernel withdraws the actual water and applies th
 so what is produced is exactly what was withdrawn and added less what was returned.
 """
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date
 
@@ -161,22 +161,26 @@ class Fleet:
                 totals["recovered_CH4"] += left * made / (made + vented)
                 totals["vented_CH4_total"] += left * vented / (made + vented)
 
-    def series(self) -> dict[str, dict[str, float]]:
-        """Return what every plant does now, by the names of ``strata.variables``."""
+    def to_arrays(self) -> dict[str, Array]:
+        """Return the totals of every plant."""
+        return {
+            "totals": np.array([list(totals.values()) for totals in self.totals.values()]),
+            "warnings": np.array(self.warnings, dtype=np.str_),
+        }
+
+    def from_arrays(self, arrays: Mapping[str, Array]) -> None:
+        """Take up what :meth:`to_arrays` gave."""
+        for totals, row in zip(self.totals.values(), arrays["totals"], strict=True):
+            totals.update(zip(totals, row.tolist(), strict=True))
+        self.warnings = [str(line) for line in arrays["warnings"]]
+
+    def series(self) -> Array:
+        """Return what every plant does now, (plants, SERIES)."""
         found = {plant.name: dict(_IDLE) for plant in self.plants}
         for running in self.running:
             found[running.plant.name] = _series_of(running)
-        for name, totals in self.totals.items():
-            found[name] |= totals
-        return found
-
-
-def collect(notes: list[dict[str, dict[str, float]]]) -> dict[str, dict[str, Array]]:
-    """Return notes of :meth:`Fleet.series`, one a time, as arrays over time."""
-    return {
-        plant: {name: np.array([note[plant][name] for note in notes]) for name in series}
-        for plant, series in notes[0].items()
-    }
+        rows = [[(found[name] | self.totals[name])[key] for key in SERIES] for name in found]
+        return np.array(rows).reshape(len(rows), len(SERIES))
 
 
 #: Series of a plant that does not run: nothing flows, and ratios have no value.
@@ -210,6 +214,10 @@ _IDLE = dict.fromkeys(
     ),
     np.nan,
 )
+
+
+#: Series of a plant in the order of :meth:`Fleet.series`.
+SERIES = (*_IDLE, "recovered_CH4", "vented_CH4_total")
 
 
 def _series_of(running: _Running) -> dict[str, float]:

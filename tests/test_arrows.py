@@ -42,9 +42,13 @@ ALLOWED = {
         "plant.plan",
     },
     "clock": SMALL,
+    "fingerprint": SMALL,
+    "checkpoint": SMALL | {"results"},
     "coupling": SMALL | PHYSICS | {"clock"},
-    "projection": SMALL | PHYSICS | {"clock", "coupling", "results"},
-    "inputs": SMALL | PHYSICS | {"limits", "margins", "gradients"},
+    "projection": SMALL
+    | PHYSICS
+    | {"checkpoint", "clock", "coupling", "fingerprint", "results"},
+    "inputs": SMALL | PHYSICS | {"fingerprint", "limits", "margins", "gradients"},
     "studies": SMALL | PHYSICS | DERIVED | {"coupling", "projection"},
     "report": SMALL | PHYSICS | DERIVED | {"caution"},
     "cli": SMALL | DERIVED | {"caution", "inputs", "projection", "studies", "report"},

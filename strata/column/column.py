@@ -34,6 +34,7 @@ from strata.gas.diffusivity import gas_diffusivity
 from strata.gas.laws import Laws
 from strata.gas.table import gas_table
 from strata.lake.basin import Basin, build_basin
+from strata.lake.climate import Weather
 from strata.lake.site import Lake, River, Spring
 from strata.species import SPECIES
 from strata.water.density import (
@@ -59,17 +60,6 @@ GASES = ("CO2", "CH4", "N2", "O2", "H2S")
 LANES = 4
 #: Free gases that cross the surface, by tracer column.
 AT_SURFACE = {DIC: "CO2", METHANE: "CH4", NITROGEN: "N2", OXYGEN: "O2", SULFIDE: "H2S"}
-
-
-@dataclass(frozen=True)
-class Weather:
-    """What the air does during one visit."""
-
-    equilibrium_temperature: float  # degC
-    exchange_coefficient: float  # W m-2 K-1
-    wind_speed: float  # m/s
-    rain: float  # m/s
-    evaporation: float  # m/s
 
 
 @dataclass(frozen=True)
@@ -159,6 +149,24 @@ class Column:
         missing = self.start + self.books.sum(axis=0) - self.inventory()
         scale = np.abs(self.start) + np.abs(self.books).sum(axis=0)
         return np.where(scale > 0, np.abs(missing) / np.where(scale > 0, scale, 1.0), 0.0)
+
+    def to_arrays(self) -> dict[str, Array]:
+        """Return what the column must remember to go on with the same bytes."""
+        state = self.state
+        return {
+            "values": state.values,
+            "hydrogen": state.hydrogen,
+            "mixed_depth": state.mixed_depth,
+            "books": state.books,
+            "start": self.start,
+        }
+
+    def from_arrays(self, arrays: Mapping[str, Array]) -> None:
+        """Take up what :meth:`to_arrays` gave."""
+        for name in ("values", "hydrogen", "mixed_depth", "books"):
+            getattr(self.state, name)[...] = arrays[name]
+        self.start = arrays["start"]
+        self.refresh()
 
     def check_ledger(self) -> None:
         """Refuse to go on if the books of any tracer do not close.
@@ -282,6 +290,9 @@ class Column:
     def refresh(self) -> None:
         """Work out again what is held between visits of the clock."""
         values = self.state.values
+        if not np.isfinite(values).all():
+            layer, tracer = np.argwhere(~np.isfinite(values))[0]
+            raise self._not_a_number(layer, tracer)
         self.constants = self._carbonate_constants(values, self.pressure)
         mass, space = self.gas_load()
         grid = self.grid
@@ -309,6 +320,13 @@ class Column:
             self.lake.mixing.staircase_step,
         )
         self.molecular = self._molecular(in_situ)
+
+    def _not_a_number(self, layer: int, tracer: int) -> ComputationError:
+        """Return the error for a value that is no longer a number."""
+        depth = self.basin.depth[layer]
+        return ComputationError(
+            f"{self.tracers[tracer]} at {depth:.1f} m is no longer a number"
+        )
 
     def _molecular(self, in_situ: Array) -> Array:
         """Return the molecular diffusivity of each tracer at the faces [m2 s-1].
@@ -523,10 +541,7 @@ class Column:
             self.state, self.grid, held, self.seen, steps, dt
         )
         if code == kernel.NOT_FINITE:
-            raise ComputationError(
-                f"{self.tracers[tracer]} at {self.basin.depth[layer]:.1f} m is no longer"
-                " a number"
-            )
+            raise self._not_a_number(layer, tracer)
         if code == kernel.OVERDRAWN:
             raise ComputationError(
                 f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a"

@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, TypeVar
 
 from strata.errors import Fault, InputError, StrataError
-from strata.inputs.fingerprint import canonical_hash
+from strata.fingerprint import canonical_hash
 from strata.inputs.texts import Texts
 
 if TYPE_CHECKING:

@@ -1,6 +1,7 @@
 """The one pool: independent jobs on the processors of this machine."""
 
 import os
+import sys
 import threading
 from collections.abc import Callable, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor
@@ -65,8 +66,8 @@ class _Reporter:
 def _run_in_processes(
     jobs: Sequence[Job[T]], note: Callable[[int, float], None], workers: int
 ) -> list[T]:
-    """Run jobs in processes that begin clean, and pass their progress on from a thread."""
-    context = get_context("spawn")
+    """Run jobs in processes, and pass their progress on from a thread."""
+    context = get_context(_start_method())
     queue = context.Queue()
 
     def listen() -> None:
@@ -74,7 +75,6 @@ def _run_in_processes(
             note(*report)
 
     listener = threading.Thread(target=listen, daemon=True)
-    listener.start()
     try:
         with ProcessPoolExecutor(
             workers, mp_context=context, initializer=_receive, initargs=(queue,)
@@ -82,6 +82,7 @@ def _run_in_processes(
             futures: list[Future[T]] = [
                 pool.submit(_work, job, number) for number, job in enumerate(jobs)
             ]
+            listener.start()
             try:
                 return [future.result() for future in futures]
             except BaseException:
@@ -89,7 +90,18 @@ def _run_in_processes(
                 raise
     finally:
         queue.put(None)
-        listener.join(timeout=5)
+        if listener.is_alive():
+            listener.join(timeout=5)
+
+
+def _start_method() -> str:
+    """Return how workers begin: as copies where that is safe, clean otherwise.
+
+    A copy has all that is imported and compiled at hand, which saves seconds; a process with
+    more threads than one must not be copied.
+    """
+    alone = threading.active_count() == 1
+    return "fork" if alone and sys.platform == "linux" else "spawn"
 
 
 def _receive(queue: Any) -> None:

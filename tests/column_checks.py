@@ -4,14 +4,11 @@ Each case returns what the program found beside what is exact; tests hold the tw
 ``scripts/validate_numerics.py`` tells how far apart they are.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date
 
 import numpy as np
-from scipy.integrate import solve_ivp
 from scipy.interpolate import PchipInterpolator
-from scipy.linalg import solve_banded
-from scipy.sparse import csc_matrix, diags
 
 from strata.column.column import REFERENCE_DENSITY, REFERENCE_HEAT_CAPACITY, Column
 from strata.column.tracers import ALKALINITY, DIC, SALINITY, TEMPERATURE, TRACERS
@@ -72,6 +69,14 @@ def run(column, seconds, dt, weather=CALM, visits=20):
         column.refresh()
         gives = column.natural(column.surroundings())
         column.advance(weather, [], gives, steps, seconds / visits / steps)
+
+
+def means_of(function, basin, points=40):
+    """Return means over layers, weighted by volume."""
+    share = (np.arange(points) + 0.5) / points
+    z = basin.faces[:-1, None] + share * basin.thickness[:, None]
+    area = basin.area[:-1, None] + share * np.diff(basin.area)[:, None]
+    return (function(z) * area).sum(axis=1) / area.sum(axis=1)
 
 
 def spring(name, depth, flow, layer, salinity=0.0, phosphate=0.0):
@@ -290,172 +295,31 @@ def lifting(layers=200, years=5.0):
     return found, flow * time, column
 
 
-# Two independent solutions of the same equation --------------------------------------------
-
-#: A basin like a lake's, with a flat floor.
-BOWL = np.array([9.0, 7.5, 6.0, 4.5, 3.0]) * 1e8
+# A staircase ------------------------------------------------------------------------------
 
 
-def bowl_with_springs(layers, years, dt_days, diffusivity=2e-7):
-    """Return phosphate of a lake with two springs, bed flux and diffusion, by the column."""
-    faces = np.linspace(0.0, 200.0, layers + 1)
-    depth = 0.5 * (faces[1:] + faces[:-1])
-    springs = tuple(
-        Spring(
-            name,
-            sum(between) / 2,
-            flow,
-            20.0,
-            salinity,
-            {"DIC": 1.0, "alkalinity": 1.0, "phosphate": phosphate},
-            spread=between,
-        )
-        for name, between, flow, salinity, phosphate in BOWL_SPRINGS
-    )
-    bed = (BedSource("phosphate", 100.0, 200.0, BOWL_BED),)
-    lake = plain_lake(faces, BOWL, diffusivity=diffusivity, springs=springs, bed=bed)
-    column = column_of(lake, 1.0 + 0.02 * depth)
-    column.values[:, PHOSPHATE] = _means(bowl_start, column.basin)
-    start = column.values[:, PHOSPHATE].copy()
-    run(column, years * YEAR, dt_days * DAY, visits=10)
-    return column, start
+def staircase(layer, years=10.0):
+    """Return the mean heat flux through the middle of a gradient with a staircase [W m-2].
 
-
-#: Name, interval [m], flow [m3/s], salinity [g/kg], phosphate [mol/m3].
-BOWL_SPRINGS = (
-    ("deep", (180.0, 200.0), 30.0, 4.9, 1.0),
-    ("upper", (80.0, 100.0), 20.0, 2.9, 0.1),
-)
-BOWL_BED = 1e-8  # mol m-2 s-1
-
-
-def bowl_start(depth):
-    """Return the phosphate that the bowl starts with."""
-    return 0.2 + 0.5 / (1 + np.exp(-(depth - 140.0) / 6.0))
-
-
-def _means(function, basin, points=40):
-    """Return means over layers, weighted by volume."""
-    share = (np.arange(points) + 0.5) / points
-    z = basin.faces[:-1, None] + share * basin.thickness[:, None]
-    area = basin.area[:-1, None] + share * np.diff(basin.area)[:, None]
-    return (function(z) * area).sum(axis=1) / area.sum(axis=1)
-
-
-def by_lines(layers, years, diffusivity):
-    """Return phosphate of the same lake by lines: central differences, BDF in time [scipy].
-
-    Written from the equation, with nothing of the program but the areas: A dc/dt = d/dz (A K
-    dc/dz) + d/dz (Q c) + s c_in + bed flux (-dA/dz), Q rising from the floor as springs enter.
+    Warm salty water under cool fresh, density ratio 3.3, the gradient 20 m thick; nothing but
+    double diffusion and molecules moves heat.
     """
-    area_at = PchipInterpolator(np.linspace(0.0, 200.0, len(BOWL)), BOWL)
-    faces = np.linspace(0.0, 200.0, layers + 1)
-    depth, step = 0.5 * (faces[1:] + faces[:-1]), 200.0 / layers
-    area, volume = area_at(faces), np.diff(area_at.antiderivative()(faces))
-    flow, entering = np.zeros(layers + 1), np.zeros(layers)
-    for _, (top, foot), water, _, phosphate in BOWL_SPRINGS:
-        flow += water * np.clip((foot - faces) / (foot - top), 0.0, 1.0)
-        share = np.clip(np.minimum(faces[1:], foot) - np.maximum(faces[:-1], top), 0, None)
-        entering += phosphate * water * share / (foot - top)
-    bed = area[:-1] - area[1:]
-    bed[-1] += area[-1]
-    entering += BOWL_BED * bed * (depth > 100.0)
-    spread = area * diffusivity / step
-    spread[0] = spread[-1] = 0.0
-    lower, upper = np.zeros(layers), np.zeros(layers)  # to the neighbour above and below
-    middle = -(spread[:-1] + spread[1:])
-    lower += spread[:-1]
-    upper += spread[1:]
-    # half of what passes a face comes from either side; at the top the outlet takes c itself
-    middle[1:] -= 0.5 * flow[1:-1]
-    middle[:-1] += 0.5 * flow[1:-1]
-    lower[1:] -= 0.5 * flow[1:-1]
-    upper[:-1] += 0.5 * flow[1:-1]
-    middle[0] -= flow[0]
-    matrix = diags([lower[1:], middle, upper[:-1]], [-1, 0, 1]).multiply(1 / volume[:, None])
-    matrix = csc_matrix(matrix)
-    start = bowl_start(depth)
-    solved = solve_ivp(
-        lambda _, c: matrix @ c + entering / volume,
-        (0.0, years * YEAR),
-        start,
-        method="BDF",
-        jac=matrix,
-        rtol=1e-7,
-        atol=1e-9,
-        t_eval=[years * YEAR],
-    )
-    return depth, solved.y[:, -1], volume
+    floor = 120.0
+    faces = np.linspace(0.0, floor, round(floor / layer) + 1)
+    lake = plain_lake(faces, diffusivity=1e-14)
+    lake = replace(lake, mixing=replace(lake.mixing, staircase_step=0.7))
 
+    def rise(z):
+        return 0.5 * (1 + np.tanh((z - 60.0) / 8.0))
 
-def against_lines(layers, years=30.0, dt_days=2.0, diffusivity=2e-7):
-    """Return the column beside the solution by lines, and the part of its own layers."""
-    column, _ = bowl_with_springs(layers, years, dt_days, diffusivity)
-    whole = diffusivity + column.molecular[0, PHOSPHATE]
-    fine = 8 * layers
-    _, values, volume = by_lines(fine, years, whole)
-    content = (values * volume).reshape(layers, 8).sum(axis=1)
-    exact = content / volume.reshape(layers, 8).sum(axis=1)
-    return Compared(column.basin.depth, column.values[:, PHOSPHATE], exact)
-
-
-def moving_front(layers, years, diffusivity):
-    """Return a front that a spring at the floor lifts through a bowl, by column and by layers
-    that move with the water.
-
-    Layers of the second solution hold their water: springs add new ones at the floor, the
-    outlet takes from the uppermost, and only diffusion passes between them, backward in time.
-    """
-    floor, flow, at = 200.0, 25.0, 150.0
-    faces = np.linspace(0.0, floor, layers + 1)
-    depth = 0.5 * (faces[1:] + faces[:-1])
-    layer = floor / layers
-    springs = (spring("floor", floor - 0.5 * layer, flow, layer, 1.0 + 0.02 * floor, 1.0),)
-    lake = plain_lake(faces, BOWL, diffusivity=diffusivity, springs=springs)
-    column = column_of(lake, 1.0 + 0.02 * depth)
-
-    def front(z):
-        return 0.5 * (1 + np.tanh((z - at) / 2.0))
-
-    column.values[:, PHOSPHATE] = _means(front, column.basin)
-    whole = diffusivity + column.molecular[0, PHOSPHATE]
-    run(column, years * YEAR, DAY, visits=20)
-    found = column.values[:, PHOSPHATE]
-    exact = _layers_that_move(front, flow, whole, years * YEAR, column.basin)
-    return Compared(depth, found, exact)
-
-
-def _layers_that_move(front, flow, diffusivity, seconds, basin):
-    """Return the means over a basin's layers of a front carried by layers of its own water."""
-    table = np.linspace(0.0, basin.faces[-1], 20001)
-    area_at = PchipInterpolator(np.linspace(0.0, basin.faces[-1], len(BOWL)), BOWL)
-    sums = area_at.antiderivative()(table)
-    below = sums[-1] - sums  # volume below each depth of the table
-    deep = np.linspace(0.0, basin.faces[-1], 801)  # 0.25 m
-    nodes = np.interp(deep, table, below)[::-1]  # from the floor up: volume below each node
-    z = 0.5 * (deep[1:] + deep[:-1])[::-1]
-    values = front(z)
-    steps = 2000
-    dt = seconds / steps
-    for _ in range(steps):
-        # what entered is one new layer at the floor; all others now lie higher
-        nodes = np.concatenate([[0.0], nodes + flow * dt])
-        values = np.concatenate([[1.0], values])
-        keep = nodes[:-1] < below[0]
-        values, nodes = values[keep], np.append(nodes[:-1][keep], below[0])
-        level = np.interp(nodes, below[::-1], table[::-1])
-        middle = 0.5 * (level[1:] + level[:-1])
-        volume = np.diff(nodes)
-        conductance = area_at(level[1:-1]) * diffusivity / (middle[:-1] - middle[1:])
-        bands = np.zeros((3, len(values)))
-        bands[0, 1:] = bands[2, :-1] = -dt * conductance
-        bands[1] = volume
-        bands[1, 1:] += dt * conductance
-        bands[1, :-1] += dt * conductance
-        values = solve_banded((1, 1), bands, volume * values)
-    content = np.concatenate([[0.0], np.cumsum(values * np.diff(nodes))])
-    at_faces = np.interp(np.interp(basin.faces, table, below), nodes, content)
-    return -np.diff(at_faces) / basin.volume
+    column = column_of(lake, 0.0)
+    column.values[:, SALINITY] = 2.0 + 1.0 * means_of(rise, column.basin)
+    column.values[:, TEMPERATURE] = 23.0 + 1.0 * means_of(rise, column.basin)
+    deep = column.basin.faces[:-1] >= 60.0 - 1e-9
+    before = column.basin.volume[deep] @ column.values[deep, TEMPERATURE]
+    run(column, years * YEAR, DAY, visits=round(12 * years))
+    after = column.basin.volume[deep] @ column.values[deep, TEMPERATURE]
+    return (before - after) * column.heat_capacity / (AREA * years * YEAR)
 
 
 # A closed column --------------------------------------------------------------------------

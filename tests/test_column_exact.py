@@ -3,18 +3,17 @@
 import numpy as np
 import pytest
 from column_checks import (
-    against_lines,
     bed_heat,
     breathing_box,
     closed_column,
     filling,
     lifting,
     mixed_box,
-    moving_front,
     orders,
     two_springs,
 )
 from scipy.integrate import solve_ivp
+from second_solutions import against_lines, moving_front
 
 from strata.column.reactions import react
 from strata.column.tracers import ALKALINITY, DIC, METHANE, OXYGEN, SULFIDE, TRACERS

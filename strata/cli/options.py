@@ -26,6 +26,16 @@ step_days = click.option(
     show_default=True,
     help="Length of a step of the column; 5 is enough for a survey.",
 )
+checkpoint = click.option(
+    "--checkpoint",
+    type=_FILE,
+    help="File to keep the run in; if it is there, the run goes on from it.",
+)
+check_step = click.option(
+    "--check-step",
+    is_flag=True,
+    help="Run again with half the step and show what changes.",
+)
 limits = click.option(
     "--limits",
     type=_FILE,

@@ -13,6 +13,8 @@ from strata.cli import BREACHED, options
 @click.option("-o", "--out", type=click.Path(path_type=Path), help="NetCDF file to write.")
 @options.years
 @options.step_days
+@options.check_step
+@options.checkpoint
 @options.limits
 @options.strict
 @options.as_json
@@ -24,6 +26,8 @@ def command(
     out: Path | None,
     years: float,
     step_days: float,
+    check_step: bool,
+    checkpoint: Path | None,
     limits: Path | None,
     strict: bool,
     as_json: bool,
@@ -41,6 +45,7 @@ def command(
     from strata.cli import numbers, output, terminal
     from strata.inputs import load_all
     from strata.report import tables
+    from strata.studies import step
     from strata.studies.compare import compare
 
     terminal.show_warnings()
@@ -49,6 +54,20 @@ def command(
         output.writable_file(out)
     rules_file = options.limits_file(lake, limits) if strict else limits
     site, plans, rules = load_all(lake, [plan] if plan else [], rules_file)
+    if check_step:
+        with terminal.progress(f"projecting {years:g} years twice") as progress:
+            _, changes = step.check_step(
+                site,
+                plans[0] if plans else None,
+                years=years,
+                step_days=step_days,
+                progress=progress,
+            )
+        if as_json:
+            terminal.report_json({"step_check": [vars(change) for change in changes]})
+        else:
+            terminal.report(f"{site.site.name}\n\n{tables.step_changes(changes)}")
+        return
     with terminal.progress(f"projecting {years:g} years") as progress:
         comparison = compare(
             site,
@@ -57,12 +76,15 @@ def command(
             years=years,
             step_days=step_days,
             alone=not plans,
+            checkpoint=checkpoint,
             progress=progress,
         )
     name, found = list(comparison.results.items())[-1]
     verdict = comparison.verdicts.get(name)
     if out:
         results.write(found, out)
+        if checkpoint:
+            checkpoint.unlink(missing_ok=True)
     if as_json:
         rows = verdict.as_dicts() if verdict else None
         terminal.report_json(numbers.outcome(found) | {"verdict": rows})

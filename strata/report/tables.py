@@ -8,6 +8,7 @@ import xarray as xr
 from strata.gradients import Gradient, StabilityProfiles
 from strata.limits import BREACHED, KEPT, MILLION, UNCERTAIN, Verdict, VerdictRow
 from strata.margins import cubic_kilometres, lifting_energy, tonnes
+from strata.studies.step import StepChange
 
 BAR = 1e5
 
@@ -159,6 +160,21 @@ def ledger_line(result: xr.Dataset) -> str:
     return (
         f"ledger of {name}: {count} tracers close to {error:.1e} or better (worst: {tracer})"
     )
+
+
+def step_changes(changes: Sequence[StepChange]) -> str:
+    """Return what halving the step changes in every quantity that can be limited."""
+    rows = [
+        (
+            f"{one.words} [{one.unit}]",
+            f"{one.value:.6g}",
+            f"{one.halved:.6g}",
+            f"{one.change:.2g}",
+        )
+        for one in changes
+    ]
+    heads = ("worst over the run", "step", "half the step", "largest change")
+    return aligned(heads, rows)
 
 
 def gradients_of(result: xr.Dataset, time: int = 0) -> tuple[Gradient, ...]:

@@ -2,7 +2,7 @@
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
-from functools import partial
+from pathlib import Path
 
 import xarray as xr
 
@@ -10,7 +10,6 @@ from strata.errors import StrataError
 from strata.lake.site import Lake
 from strata.limits import Limits, Verdict, judge
 from strata.plant.plan import Plan
-from strata.projection import project
 from strata.results import NO_PLAN
 from strata.studies import pool
 
@@ -44,6 +43,7 @@ def compare(
     years: float = 50.0,
     step_days: float = 1.0,
     alone: bool = True,
+    checkpoint: Path | None = None,
     progress: Callable[[float], None] | None = None,
     workers: int | None = None,
 ) -> Comparison:
@@ -59,6 +59,8 @@ def compare(
         As in :func:`strata.project`.
     alone : bool
         Whether the lake left alone is projected too; limits need it.
+    checkpoint : Path, optional
+        File that the last of the projections is kept in, and goes on from if it is there.
     progress : callable, optional
         Called with the share of all work done.
     workers : int, optional
@@ -73,21 +75,12 @@ def compare(
     names = [plan.name if plan else NO_PLAN for plan in cases]
     if len(set(names)) < len(names):
         raise StrataError("the plans of a comparison must bear different names")
-    jobs = [partial(_project, lake, plan, years, step_days) for plan in cases]
+    common = {"years": years, "step_days": step_days}
+    jobs = [pool.projection(lake, plan, **common) for plan in cases[:-1]]
+    jobs.append(pool.projection(lake, cases[-1], **common, checkpoint=checkpoint))
     results = dict(zip(names, pool.run(jobs, progress, workers), strict=True))
     verdicts = {}
     if limits is not None:
         baseline = results[NO_PLAN]
         verdicts = {name: judge(found, limits, baseline) for name, found in results.items()}
     return Comparison(results, verdicts)
-
-
-def _project(
-    lake: Lake,
-    plan: Plan | None,
-    years: float,
-    step_days: float,
-    progress: Callable[[float], None],
-) -> xr.Dataset:
-    """Run one projection, as the pool calls it."""
-    return project(lake, plan, years=years, step_days=step_days, progress=progress)

@@ -3,10 +3,17 @@
 import os
 import sys
 import threading
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor
+from functools import partial
 from multiprocessing import get_context
 from typing import Any, TypeVar
+
+import xarray as xr
+
+from strata.lake.site import Lake
+from strata.plant.plan import Plan
+from strata.projection import project
 
 T = TypeVar("T")
 
@@ -44,6 +51,20 @@ def run(
     if workers <= 1:
         return [job(_Reporter(note, number)) for number, job in enumerate(jobs)]
     return _run_in_processes(jobs, note, workers)
+
+
+def projection(lake: Lake, plan: Plan | None, **options: Any) -> Job[xr.Dataset]:
+    """Return a projection as a job: :func:`strata.project` with these options."""
+    return partial(_project, lake, plan, options)
+
+
+def _project(
+    lake: Lake,
+    plan: Plan | None,
+    options: Mapping[str, Any],
+    progress: Callable[[float], None],
+) -> xr.Dataset:
+    return project(lake, plan, progress=progress, **options)
 
 
 def usable_processors() -> int:

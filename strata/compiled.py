@@ -1,9 +1,9 @@
 """The one decorator for compiled code, and how a compiled formula meets arrays.
 
 The cache of the compiler does not notice an edited callee or constant in another file, so its
-folder is named by a digest of every compiled source together with the constants and the species
-table.  Where no folder can be written the code compiles uncached.  With ``NUMBA_DISABLE_JIT=1``
-everything runs, slowly, as plain Python.
+folder is named by a digest of every compiled source together with the constants and the
+species table.  Where no folder can be written the code compiles uncached.  With
+``NUMBA_DISABLE_JIT=1`` everything runs, slowly, as plain Python.
 """
 
 import hashlib

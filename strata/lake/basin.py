@@ -1,8 +1,8 @@
 """The basin: area against depth, fixed layers and their exact volumes.
 
-Area is monotone between the given points (PCHIP, Fritsch & Carlson 1980); the volume of a layer
-is the exact integral of that curve, and its bed area is the area at its top less the area at its
-foot, with the floor in the last layer.
+Area is monotone between the given points (PCHIP, Fritsch & Carlson 1980); the volume of a
+layer is the exact integral of that curve, and its bed area is the area at its top less the
+area at its foot, with the floor in the last layer.
 """
 
 from dataclasses import dataclass
@@ -59,7 +59,9 @@ class Basin:
 
     def layer_at(self, depth: float) -> int:
         """Return the index of the layer that holds a depth [m]."""
-        return int(np.clip(np.searchsorted(self.faces, depth, "right") - 1, 0, self.layers - 1))
+        return int(
+            np.clip(np.searchsorted(self.faces, depth, "right") - 1, 0, self.layers - 1)
+        )
 
     def overlap(self, top: float, foot: float) -> Array:
         """Return the share of each layer's thickness that lies between two depths [m]."""

@@ -8,15 +8,17 @@ from strata.lake.site import Profile
 
 Array = NDArray[np.float64]
 
-#: Step of salinity between two samples, over its standard error, from which on it leads the way.
+#: Step of salinity between two samples, over its standard error, from which on it leads the
+#: way.
 SIGNAL = 5.0
 
 
 def layer_means(profile: Profile, faces: Array) -> Array:
     """Return the mean of a measured profile over each layer.
 
-    Monotone between the measurements (PCHIP, Fritsch & Carlson 1980) and constant beyond the first
-    and last, integrated exactly, so that the layers together hold the integral of the cast.
+    Monotone between the measurements (PCHIP, Fritsch & Carlson 1980) and constant beyond the
+    first and last, integrated exactly, so that the layers together hold the integral of the
+    cast.
 
     Parameters
     ----------
@@ -41,9 +43,10 @@ def layer_means(profile: Profile, faces: Array) -> Array:
 def between_samples(samples: Profile, salinity: Profile) -> Profile:
     """Return water samples filled in by what the probe saw between them.
 
-    Dissolved substances mix with the water that carries them: between two samples a quantity goes
-    from the one to the other as salinity does, and steps where salinity steps.  Where salinity does
-    not tell the two apart, by less than ``SIGNAL`` times its stated error, it goes evenly with depth.
+    Dissolved substances mix with the water that carries them: between two samples a quantity
+    goes from the one to the other as salinity does, and steps where salinity steps.  Where
+    salinity does not tell the two apart, by less than ``SIGNAL`` times its stated error, it
+    goes evenly with depth.
 
     Parameters
     ----------
@@ -55,7 +58,8 @@ def between_samples(samples: Profile, salinity: Profile) -> Profile:
     Returns
     -------
     Profile
-        At the samples and at the depths of the probe between them, errors linear between samples.
+        At the samples and at the depths of the probe between them, errors linear between
+        samples.
     """
     inside = (salinity.depth > samples.depth[0]) & (salinity.depth < samples.depth[-1])
     depth = np.union1d(samples.depth, salinity.depth[inside])

@@ -383,7 +383,9 @@ def cast_errors(
     return {
         "gas_pressure_error": np.sqrt(partial) / found["gas_pressure"][0],
         "methane_in_place_error": np.asarray(
-            np.sum(methane * volume) / found["methane_in_place"][0]
+            np.sum(methane * volume) / there
+            if (there := found["methane_in_place"][0])
+            else 0.0
         ),
         "gradient_strength_error": np.sqrt(2.0) * reading / found["gradient_strength"][0],
     }

@@ -13,7 +13,7 @@ def carry(values, flow, volume, conductance, inflow, dt, steps):
     count, tracers = values.shape
     weight, start = face_weights(volume)
     edge, flux = np.empty((count + 1, tracers)), np.empty((count + 1, tracers))
-    work = np.empty((3, *values.shape))
+    work = np.empty((4, *values.shape))
     for _ in range(steps):
         lost = flow[0] * values[0] * dt
         advect(values, flow, volume, weight, start, dt, edge, flux)

@@ -57,7 +57,7 @@ def test_diffusion_in_a_closed_cylinder_follows_the_cosine_solution():
         steps = 60 * (count // 25)  # second order in time and in space
         values = layer_means_of(lambda z: 1 + np.cos(np.pi * z / height), faces)[:, None]
         conductance = np.full((count + 1, 1), kappa / (height / count))
-        work = np.empty((3, *values.shape))
+        work = np.empty((4, *values.shape))
         for _ in range(steps):
             diffuse(values, conductance, np.diff(faces), time / steps, work)
         fade = np.exp(-kappa * (np.pi / height) ** 2 * time)
@@ -85,7 +85,7 @@ def test_diffusion_in_a_basin_of_linear_area_follows_the_bessel_solution():
         time = height**2 / kappa / root**2
         steps = 240 * (count // 25)
         conductance = (x * kappa / (height / count))[:, None].copy()
-        work = np.empty((3, *values.shape))
+        work = np.empty((4, *values.shape))
         for _ in range(steps):
             diffuse(values, conductance, volume, time / steps, work)
         exact = np.exp(-1) * j0(root * (1 - middle / height))
@@ -118,7 +118,7 @@ def test_random_fields_make_no_new_extreme_and_lose_nothing(seed):
     assert np.all(values[inner] <= before.max(axis=0) + 1e-12 * span)
     conductance = 10 ** rng.uniform(-6, 6, (count + 1, 3))
     values = before.copy()
-    work = np.empty((3, *values.shape))
+    work = np.empty((4, *values.shape))
     diffuse(values, conductance, volume, 1.0, work)
     np.testing.assert_allclose(volume @ values, held, rtol=1e-11)
     assert np.all(values >= low - 1e-12 * span)

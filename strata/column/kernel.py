@@ -312,7 +312,7 @@ def advance(state, grid, held, seen, steps, dt):
     edge = np.empty((count + 1, tracers))
     flux = np.empty((count + 1, tracers))
     conductance = np.zeros((count + 1, tracers))
-    work = np.empty((3, count, tracers))
+    work = np.empty((4, count, tracers))
     gain = np.empty((count, tracers))
     carried = np.empty(tracers)
     withdrawn = np.empty((held.take.shape[0], tracers))

@@ -12,9 +12,12 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
+from strata.compiled import broadcast, compiled
 from strata.errors import ComputationError
 from strata.lake.basin import Basin
 from strata.lake.site import Spring
+from strata.water.density import parcel_density
+from strata.water.intrusion import INTRUSION_COEFFICIENT, layer_shares
 from strata.water.plume import follow_plume
 
 Array = NDArray[np.float64]
@@ -121,6 +124,67 @@ def spread_evenly(spring: Spring, basin: Basin) -> Array:
     return share / share.sum()
 
 
+def plunge(
+    source: Source, around: Surroundings, stability: Array, mixing: float
+) -> tuple[Array, Array]:
+    """Return the shares in which a river ends in the layers, and what it takes along [m3 s-1].
+
+    A river lighter than the lake's surface spreads over it, in the top layer.  A heavier one
+    plunges, takes along ``mixing`` times its flow from the top layer as it does (0.1 to 1 and
+    more after Akiyama & Stefan 1984, J. Hydraul. Eng. 110:484-499), and follows the bed as far
+    as the first layer that is heavier than the mixture, over which it spreads as an intrusion.
+
+    Parameters
+    ----------
+    source : Source
+        The river at the surface.
+    around : Surroundings
+        The lake.
+    stability : ndarray, shape (n - 1,)
+        Buoyancy frequency squared at the inner faces [s-2].
+    mixing : float
+        Flow taken along over that of the river.
+    """
+    count = len(around.temperature)
+    given, entrained = np.zeros(count), np.zeros(count)
+
+    def density(theta: float, salt: float, mass: float, space: float) -> Array:
+        return np.asarray(
+            broadcast(parcel_density)(
+                theta, salt, around.pressure, mass, space, around.haline_contraction
+            )
+        )
+
+    lake = density(around.temperature, around.salinity, around.gas_mass, around.gas_volume)
+    own = (source.temperature, source.salinity, source.gas_mass, source.gas_volume)
+    if density(*own)[0] <= lake[0] or source.flow <= 0.0:
+        given[0] = 1.0
+        return given, entrained
+    top = (
+        around.temperature[0],
+        around.salinity[0],
+        around.gas_mass[0],
+        around.gas_volume[0],
+    )
+    share = mixing / (1.0 + mixing)
+    mixture = [part + share * (there - part) for part, there in zip(own, top, strict=True)]
+    heavier = np.flatnonzero(lake >= density(*mixture))
+    entrained[0] = mixing * source.flow
+    if len(heavier) == 0:
+        given[-1] = 1.0
+        return given, entrained
+    flow = (1.0 + mixing) * source.flow
+    level = float(around.basin.faces[heavier[0]])
+    given = layer_shares(
+        around.basin.faces,
+        np.ascontiguousarray(stability),
+        level,
+        flow,
+        INTRUSION_COEFFICIENT,
+    )
+    return given, entrained
+
+
 @dataclass(frozen=True)
 class Stacked:
     """Takes and gives as the arrays of the kernel."""
@@ -137,13 +201,22 @@ class Stacked:
     give_span: NDArray[np.int64]
 
 
+@compiled
+def _fill_spans(shares, spans):
+    """Fill the first column that is not zero, and the one behind the last, of every row."""
+    for row in range(shares.shape[0]):
+        spans[row, 0], spans[row, 1] = 0, 0
+        for column in range(shares.shape[1]):
+            if shares[row, column] != 0.0:
+                if spans[row, 1] == 0:
+                    spans[row, 0] = column
+                spans[row, 1] = column + 1
+
+
 def _spans(shares: Array) -> NDArray[np.int64]:
-    """Return for each row the first column that is not zero, and the one behind the last."""
-    spans = np.zeros((len(shares), 2), dtype=np.int64)
-    for row, share in enumerate(shares):
-        used = np.flatnonzero(share)
-        if len(used):
-            spans[row] = used[0], used[-1] + 1
+    """Return where the entries of each row that are not zero begin and end."""
+    spans = np.empty((len(shares), 2), dtype=np.int64)
+    _fill_spans(shares, spans)
     return spans
 
 

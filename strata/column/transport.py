@@ -131,44 +131,45 @@ def advect(values, flow, volume, weight, start, dt, edge, flux):
 
 
 @compiled
-def _factor(conductance, volume, dt, ratio, pivot):
-    """Eliminate downward in ``volume + dt * conduction``: fill ratios and inverse pivots."""
-    count, tracers = ratio.shape
-    for m in range(tracers):
-        below = dt * conductance[1, m]
-        pivot[0, m] = 1.0 / (volume[0] + below)
-        ratio[0, m] = below * pivot[0, m]
-    for i in range(1, count):
-        last = i == count - 1
-        for m in range(tracers):
-            above = dt * conductance[i, m]
-            below = 0.0 if last else dt * conductance[i + 1, m]
-            pivot[i, m] = 1.0 / (volume[i] + above * (1.0 - ratio[i - 1, m]) + below)
-            ratio[i, m] = below * pivot[i, m]
+def _prepare(values, conductance, volume, part, ratio, pivot, gain):
+    """Eliminate downward in ``volume + part * conduction``, and fill what conduction brings.
 
-
-@compiled
-def _solve(values, conductance, dt, explicit, ratio, pivot, change):
-    """Turn ``change``, amounts already there, into the change of the values.
-
-    To what is there comes the gain by conduction over ``explicit`` seconds from ``values``;
-    then ``(volume + dt * conduction) change = that`` is solved with the factors of
-    :func:`_factor`.
+    ``ratio`` and ``pivot`` are for :func:`_substitute`; ``gain`` is the amount that conduction
+    over ``part`` seconds brings to each layer from the values as they are.
     """
     count, tracers = values.shape
     for m in range(tracers):
-        gain = change[0, m] + explicit * conductance[1, m] * (values[1, m] - values[0, m])
-        change[0, m] = gain * pivot[0, m]
+        below = part * conductance[1, m]
+        pivot[0, m] = 1.0 / (volume[0] + below)
+        ratio[0, m] = below * pivot[0, m]
+        gain[0, m] = below * (values[1, m] - values[0, m])
     for i in range(1, count - 1):
         for m in range(tracers):
-            gain = change[i, m]
-            gain -= explicit * conductance[i, m] * (values[i, m] - values[i - 1, m])
-            gain += explicit * conductance[i + 1, m] * (values[i + 1, m] - values[i, m])
-            change[i, m] = (gain + dt * conductance[i, m] * change[i - 1, m]) * pivot[i, m]
+            above = part * conductance[i, m]
+            below = part * conductance[i + 1, m]
+            pivot[i, m] = 1.0 / (volume[i] + above * (1.0 - ratio[i - 1, m]) + below)
+            ratio[i, m] = below * pivot[i, m]
+            gain[i, m] = below * (values[i + 1, m] - values[i, m]) - above * (
+                values[i, m] - values[i - 1, m]
+            )
     i = count - 1
     for m in range(tracers):
-        gain = change[i, m] - explicit * conductance[i, m] * (values[i, m] - values[i - 1, m])
-        change[i, m] = (gain + dt * conductance[i, m] * change[i - 1, m]) * pivot[i, m]
+        above = part * conductance[i, m]
+        pivot[i, m] = 1.0 / (volume[i] + above * (1.0 - ratio[i - 1, m]))
+        ratio[i, m] = 0.0
+        gain[i, m] = -above * (values[i, m] - values[i - 1, m])
+
+
+@compiled
+def _substitute(conductance, part, ratio, pivot, change):
+    """Turn amounts in ``change`` into the change of the values that they make."""
+    count, tracers = change.shape
+    for m in range(tracers):
+        change[0, m] *= pivot[0, m]
+    for i in range(1, count):
+        for m in range(tracers):
+            passed = part * conductance[i, m] * change[i - 1, m]
+            change[i, m] = (change[i, m] + passed) * pivot[i, m]
     for i in range(count - 2, -1, -1):
         for m in range(tracers):
             change[i, m] += ratio[i, m] * change[i + 1, m]
@@ -181,29 +182,30 @@ def diffuse(values, conductance, volume, dt, work):
     TR-BDF2 [B85] while the largest diffusion number is at most 3, where a spike of one layer
     does not undershoot; backward Euler beyond.  ``conductance`` (n + 1, m) is area times
     diffusivity over distance at the faces [m3 s-1], of which only the inner ones are used;
-    ``work`` (3, n, m) is workspace.
+    ``work`` (4, n, m) is workspace.
     """
     count, tracers = values.shape
-    ratio, pivot, change = work[0], work[1], work[2]
+    ratio, pivot, gain, change = work[0], work[1], work[2], work[3]
     largest = 0.0
     for f in range(1, count):
         most = conductance[f, 0]
         for m in range(1, tracers):
             most = max(most, conductance[f, m])
         largest = max(largest, most / min(volume[f - 1], volume[f]))
-    change[:, :] = 0.0
-    if largest * dt > DIFFUSION_NUMBER:
-        _factor(conductance, volume, dt, ratio, pivot)
-        _solve(values, conductance, dt, dt, ratio, pivot, change)
-    else:
-        part = 0.5 * GAMMA * dt
-        _factor(conductance, volume, part, ratio, pivot)
-        _solve(values, conductance, part, 2.0 * part, ratio, pivot, change)
+    euler = largest * dt > DIFFUSION_NUMBER
+    part = dt if euler else 0.5 * GAMMA * dt
+    _prepare(values, conductance, volume, part, ratio, pivot, gain)
+    first = 1.0 if euler else 2.0
+    for i in range(count):
+        for m in range(tracers):
+            change[i, m] = first * gain[i, m]
+    _substitute(conductance, part, ratio, pivot, change)
+    if not euler:
         weight = 1.0 / (GAMMA * (2.0 - GAMMA))
         for i in range(count):
             for m in range(tracers):
-                change[i, m] *= weight * volume[i]
-        _solve(values, conductance, part, part, ratio, pivot, change)
+                change[i, m] = weight * volume[i] * change[i, m] + gain[i, m]
+        _substitute(conductance, part, ratio, pivot, change)
     for i in range(count):
         for m in range(tracers):
             values[i, m] += change[i, m]

@@ -4,7 +4,7 @@ import math
 
 import pytest
 
-from strata.plant.account import dew_point, figures, stream_rows
+from strata.plant.account import Account, dew_point
 from strata.plant.operate import operate
 from strata.plant.plan import Lime, Stage, Wash
 from strata.plant.streams import GasStream
@@ -18,10 +18,11 @@ PLANT = simple_plant(
     wash=Wash(8e5, 6.0, 60.0),
 )
 RUN = operate(PLANT, DEEP, SHALLOW, SITE)
+ACCOUNT = Account(PLANT, RUN, SITE)
 
 
 def test_every_stream_is_a_row_in_the_order_of_the_process():
-    rows = stream_rows(RUN, SITE)
+    rows = ACCOUNT.streams()
     assert [row["stream"] for row in rows] == [
         "feed", "limed feed", "gas of stage 1", "gas of stage 2", "wash water",
         "used wash water", "return water", "product", "vent",
@@ -34,8 +35,21 @@ def test_every_stream_is_a_row_in_the_order_of_the_process():
     assert rows[1]["solids_kg_m3"] > 0.0
 
 
+def test_water_has_the_pressure_of_the_lake_or_of_its_unit_and_gas_its_density():
+    rows = {row["stream"]: row for row in ACCOUNT.streams()}
+    # 0.86 bar of air and 345 m (190 m) of water of 1000 kg/m3 under 9.78 m/s2
+    assert rows["feed"]["pressure_bar"] == pytest.approx(34.6, abs=0.1)
+    assert rows["return water"]["pressure_bar"] == pytest.approx(19.4, abs=0.1)
+    assert rows["used wash water"]["pressure_bar"] == rows["return water"]["pressure_bar"]
+    assert rows["limed feed"]["pressure_bar"] == 2.5
+    gas = rows["gas of stage 2"]
+    mass = 44.01 * gas["CO2_share"] + 16.04 * gas["CH4_share"] + 28.0 * gas["N2_share"]
+    ideal = 0.6e5 * (mass + 18.0 * gas["H2O_share"]) / 1e3 / (8.314 * 298.0)
+    assert gas["density_kg_m3"] == pytest.approx(ideal, rel=0.01)
+
+
 def test_the_figures_of_a_year_are_those_of_the_streams():
-    found = figures(RUN)
+    found = ACCOUNT.figures()
     seconds = 365.25 * 86400.0
     assert found["CH4_vented_t_a"] == pytest.approx(
         RUN.vented.of("CH4") * 16.0425e-6 * seconds, rel=1e-9

@@ -9,7 +9,6 @@ import matplotlib
 import numpy as np
 import pytest
 import synthetic
-import xarray as xr
 from matplotlib.figure import Figure
 
 import strata
@@ -18,13 +17,10 @@ from strata.errors import InputError
 from strata.limits import BREACHED, Limit, Limits, judge
 from strata.report import figures, plot, tables
 from strata.report.dossier import dossier
+from strata.studies.separate import separate
+from strata.studies.today import account_today
 
 matplotlib.use("Agg")
-STREAMS = [
-    {"stream": "feed", "kind": "water", "flow_m3_s": 12.0, "pH": 6.153},
-    {"stream": "product", "kind": "gas", "flow_mol_s": 150.0, "CH4_share": 0.5305},
-    {"stream": "vent", "kind": "gas", "flow_mol_s": 0.0, "CH4_share": 0.0},
-]
 NAMES = ("lake left alone", "shallow return", "deep return <b>")
 
 
@@ -63,20 +59,13 @@ def verdicts(runs, limits):
 
 
 @pytest.fixture(scope="module")
-def sweep():
-    pressure = np.geomspace(0.1e5, 8e5, 30)
-    recovery = np.stack([1 - pressure / 15e5, 1 - pressure / 10e5])
-    return xr.Dataset(
-        {
-            "recovery": (("case", "pressure"), recovery),
-            "purity": (
-                ("case", "pressure"),
-                np.stack([0.3 + pressure / 4e6, 0 * pressure + 1]),
-            ),
-            "net_energy": (("case", "pressure"), recovery * np.log(pressure / 5e3) * 1e6),
-        },
-        coords={"case": ["CO2 free", "CO2 bound"], "pressure": pressure},
-    )
+def sweep(lake):
+    return separate(lake, synthetic.plan())
+
+
+@pytest.fixture(scope="module")
+def account(lake):
+    return account_today(lake, synthetic.plan())
 
 
 @pytest.fixture
@@ -85,7 +74,7 @@ def ax():
 
 
 @pytest.fixture(scope="module")
-def page(runs, verdicts, limits, lake, sweep, tmp_path_factory):
+def page(runs, verdicts, limits, lake, sweep, account, tmp_path_factory):
     path = tmp_path_factory.mktemp("dossier") / "dossier.html"
     dossier(
         runs,
@@ -95,7 +84,7 @@ def page(runs, verdicts, limits, lake, sweep, tmp_path_factory):
         lake=lake,
         plans={name: synthetic.plan(name) for name in NAMES[1:]},
         separate={"shallow return": sweep},
-        streams={"shallow return, north": STREAMS},
+        accounts={"shallow return, north": account},
         date=datetime.date(2030, 5, 17),
         command="strata compare lake.toml a.toml b.toml",
     )
@@ -319,7 +308,7 @@ def test_pictures_fetch_nothing_either(page):
 def test_every_figure_has_alternative_text_with_numbers_and_a_caption(page):
     outline = Outline(page)
     pictures = outline.of("img")
-    assert len(pictures) == 10
+    assert len(pictures) == 11  # the diagram of the plant is the last
     assert len(outline.of("figcaption")) == len(pictures)
     for picture in pictures:
         assert len(picture["alt"]) > 40
@@ -353,10 +342,20 @@ def test_the_page_lists_inputs_ledger_and_command(page, runs, limits):
     assert f"none above {worst:.1e}" in page
 
 
-def test_streams_are_tabled_and_empty_ones_left_out(page):
+def test_streams_are_tabled_and_empty_ones_left_out(page, account):
     text = page[page.index("streams of water with today") :]
-    assert re.search(r">pH</th><td>1</td><td class=\"n\">6.15</td>", text)
-    assert re.search(r">CH4</th><td>1</td><td class=\"n\">0.5305</td></tr>", text)
+    feed, *_, product, vent = account.streams()
+    assert f">pH</th><td>1</td><td class=\"n\">{feed['pH']:.2f}</td>" in text
+    cells = re.search(r">CH4</th><td>1</td>(.*?)</tr>", text)
+    assert f">{product['CH4_share']:.4f}<" in cells[1]
+    assert vent["flow_mol_s"] == 0.0
+    assert ">vent</th>" not in text
+
+
+def test_the_air_of_a_plant_is_counted_with_the_factor_that_is_stated(page, account):
+    assert "a tonne of CH4 counts as 27.9 t CO2 (IPCC AR6, 100 years)" in page
+    total = account.figures()["CO2_equivalent_t_a"]
+    assert f'<td class="n">{total:.0f}</td>' in page
 
 
 def test_sentences_follow_from_the_numbers(page, runs):

@@ -12,7 +12,7 @@ from strata.report import tables
 from strata.report.dossier import dossier
 from strata.results import NO_PLAN
 from strata.studies.compare import Comparison, compare
-from strata.studies.today import separator_today, streams_today
+from strata.studies.today import accounts_today, separator_today
 
 DOSSIER = "dossier.html"
 
@@ -59,7 +59,7 @@ def run(
             lake=site,
             plans={plan.name: plan for plan in operators},
             separate=separator_today(site, operators),
-            streams=streams_today(site, operators),
+            accounts=accounts_today(site, operators),
             command=shlex.join(words),
         )
     if as_json:

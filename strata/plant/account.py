@@ -5,15 +5,18 @@ same thing.
 """
 
 import math
+from collections.abc import Mapping
+from dataclasses import dataclass
 
 from scipy.optimize import brentq
 
-from strata.constants import CALCITE_MASS, GAS_CONSTANT, LIME_MASS, ZERO_CELSIUS
-from strata.gas import fugacity_coefficients, speciate
+from strata.constants import CALCITE_MASS, GAS_CONSTANT, LIME_MASS, WATER_MASS, ZERO_CELSIUS
+from strata.gas import compressibility_factor, fugacity_coefficients, speciate
 from strata.lake.site import Site
 from strata.plant import power
 from strata.plant.chemistry import density_of, free_gases
-from strata.plant.operate import Operation
+from strata.plant.operate import Operation, pressure_at
+from strata.plant.plan import Plant
 from strata.plant.streams import NORMAL_PRESSURE, GasStream, WaterStream
 from strata.species import LAKE_GASES, SPECIES, VAPOUR
 from strata.water.transport import vapour_pressure_at
@@ -24,22 +27,55 @@ _WATER_VOLUME = 18.07e-6  # m3/mol, liquid water at 25 degC
 _WATER_GASES = ("CH4", "CO2", "N2", "O2", "H2S")
 
 
-def stream_rows(operation: Operation, site: Site) -> list[Row]:
+@dataclass(frozen=True)
+class Account:
+    """A plant, what it makes of its feed, and the site whose laws that follows."""
+
+    plant: Plant
+    operation: Operation
+    site: Site
+
+    def streams(self) -> list[Row]:
+        """Return one row per stream; see :func:`stream_rows`."""
+        return stream_rows(self.plant, self.operation, self.site)
+
+    def figures(self) -> dict[str, float]:
+        """Return what the plant makes, uses and lets go; see :func:`figures`."""
+        return figures(self.operation)
+
+
+def stream_rows(plant: Plant, operation: Operation, site: Site) -> list[Row]:
     """Return one row per stream of a plant, in the order of the process.
 
-    Water: m3/s, degC, pH, density at the pressure of the air, solids, mol/m3 of the free
-    gases, DIC, alkalinity, calcium.  Gas: mol/s, normal m3/h, degC, bar, mole fractions with
-    vapour.
+    Water: m3/s, degC, pressure (of the lake where it is drawn or put back, of the unit it
+    enters elsewhere), pH and density at the pressure of the air, solids, mol/m3 of the free
+    gases, DIC, alkalinity, calcium.  Gas: mol/s, normal m3/h, degC, bar, density at these,
+    mole fractions with vapour.
     """
+    pressures = _water_pressures(plant, site)
     return [
-        _water_row(name, stream, site)
+        _water_row(name, stream, pressures[name], site)
         if isinstance(stream, WaterStream)
         else _gas_row(name, stream)
         for name, stream in operation.streams.items()
     ]
 
 
-def _water_row(name: str, water: WaterStream, site: Site) -> Row:
+def _water_pressures(plant: Plant, site: Site) -> dict[str, float]:
+    """Return the pressure of every stream of water [Pa], by its name."""
+    pressures = {
+        "feed": pressure_at(plant.intake_depth, site),
+        "limed feed": plant.stages[0].pressure,
+        "return water": pressure_at(plant.return_water.depth, site),
+    }
+    if plant.wash is not None:
+        outlet = plant.return_wash or plant.return_water
+        pressures["wash water"] = pressure_at(plant.wash.water_depth, site)
+        pressures["used wash water"] = pressure_at(outlet.depth, site)
+    return pressures
+
+
+def _water_row(name: str, water: WaterStream, pressure: float, site: Site) -> Row:
     """Return one water stream as a row."""
     carbonate = speciate(
         water.temperature,
@@ -54,6 +90,7 @@ def _water_row(name: str, water: WaterStream, site: Site) -> Row:
         "kind": "water",
         "flow_m3_s": water.flow,
         "temperature_degC": water.temperature,
+        "pressure_bar": pressure / 1e5,
         "pH": float(carbonate.ph),
         "density_kg_m3": density_of(water, site, site.air_pressure),
         "salinity_g_kg": water.salinity,
@@ -67,6 +104,8 @@ def _water_row(name: str, water: WaterStream, site: Site) -> Row:
 def _gas_row(name: str, gas: GasStream) -> Row:
     """Return one gas stream as a row."""
     total = gas.total
+    parts = (*LAKE_GASES, VAPOUR)
+    shares = {part: gas.of(part) / total if total > 0.0 else 0.0 for part in parts}
     row: Row = {
         "stream": name,
         "kind": "gas",
@@ -74,11 +113,19 @@ def _gas_row(name: str, gas: GasStream) -> Row:
         "normal_flow_m3_h": 3600.0 * gas.normal_flow,
         "temperature_degC": gas.temperature,
         "pressure_bar": gas.pressure / 1e5,
+        "density_kg_m3": _gas_density(gas, shares) if total > 0.0 else math.nan,
     }
-    parts = (*LAKE_GASES, VAPOUR)
-    return row | {
-        f"{part}_share": gas.of(part) / total if total > 0 else 0.0 for part in parts
-    }
+    return row | {f"{part}_share": share for part, share in shares.items()}
+
+
+def _gas_density(gas: GasStream, shares: Mapping[str, float]) -> float:
+    """Return the density of a gas [kg m-3] by Peng-Robinson."""
+    mass = sum(
+        share * (WATER_MASS if part == VAPOUR else SPECIES[part].molar_mass)
+        for part, share in shares.items()
+    )
+    factor = float(compressibility_factor(gas.temperature, gas.pressure, shares))
+    return gas.pressure * mass / (factor * GAS_CONSTANT * (gas.temperature + ZERO_CELSIUS))
 
 
 def dew_point(gas: GasStream) -> float:

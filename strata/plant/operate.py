@@ -204,7 +204,7 @@ def _dissolved_again(
     used: dict[str, float],
 ) -> WaterStream:
     """Return the water with gas put back into it at the pressure of its outlet."""
-    gas = _brought_to(plant, gases, _pressure_at(plant.return_water, site), site, used)
+    gas = _brought_to(plant, gases, pressure_at(plant.return_water.depth, site), site, used)
     if gas.dry <= 0.0:
         return water
     added = {
@@ -215,9 +215,9 @@ def _dissolved_again(
     return water.changed(**{name: water.of(name) + x for name, x in added.items()})
 
 
-def _pressure_at(outlet: Return, site: Site) -> float:
-    """Return the pressure [Pa] in fresh water at the depth of an outlet."""
-    return site.air_pressure + 1000.0 * standard_gravity(site.latitude) * outlet.depth
+def pressure_at(depth: float, site: Site) -> float:
+    """Return the pressure [Pa] at a depth of fresh water."""
+    return site.air_pressure + 1000.0 * standard_gravity(site.latitude) * depth
 
 
 def _pumping(
@@ -326,7 +326,7 @@ def _warnings(
             f"return water is {10.0**scale:.0f} times saturated with calcite: it will scale"
         )
     for outlet, water in outlets(plant, operation):
-        around = _pressure_at(outlet, site)
+        around = pressure_at(outlet.depth, site)
         inside = gas_pressure(water, site, around)
         if inside > around:
             found.append(

@@ -18,7 +18,6 @@ from strata.report.tables import (
     ledger_worst,
 )
 from strata.results import inputs_of
-from strata.variables import PLANT_SERIES
 
 
 @dataclass(frozen=True)
@@ -142,121 +141,6 @@ def settings(result: xr.Dataset) -> str:
     return ", ".join(f"{key.replace('_', ' ')} {value}" for key, value in options.items())
 
 
-_STREAMS = (
-    ("flow", 1.0, "m³/s", 1),
-    ("feed_CH4", 1.0, "mol/m³", 2),
-    ("recovery", 1.0, "1", 3),
-    ("product_CH4", 1.0, "mol/s", 1),
-    ("product_CO2", 1.0, "mol/s", 1),
-    ("product_purity", 1.0, "1", 3),
-    ("heating_value", 1e6, "MJ/m³", 1),
-    ("vented_CH4", 1.0, "mol/s", 2),
-    ("vented_CO2", 1.0, "mol/s", 1),
-    ("returned_CH4", 1.0, "mol/s", 1),
-    ("lime", 1.0, "mol/s", 1),
-    ("solids", 1.0, "mol/s", 1),
-    ("electric_power", 1e6, "MW", 2),
-    ("pump_power", 1e6, "MW", 2),
-    ("vacuum_power", 1e6, "MW", 2),
-    ("compression_power", 1e6, "MW", 2),
-    ("net_power", 1e6, "MW", 2),
-    ("return_density_excess", 1.0, "kg/m³", 3),
-    ("trap_depth", 1.0, "m", 1),
-    ("dilution", 1.0, "1", 1),
-    ("upper_reach", 1.0, "1", 3),
-)
-
-
-#: Series left out where a plan has none of it.
-_SILENT = ("lime", "solids", "pump_power", "vacuum_power", "compression_power")
-
-
-def plant_tables(results: Mapping[str, xr.Dataset]) -> list[Table]:
-    """Return one table per plan: what goes in and out of its plants, early and at the end."""
-    tables = []
-    for name, result in results.items():
-        if "plant" not in result.coords:
-            continue
-        running = result["plant_flow"].values > 0.0
-        columns: list[tuple[str, int, int]] = []
-        for number, plant in enumerate(result["plant"].values):
-            times = np.flatnonzero(running[number])
-            if times.size == 0:
-                continue
-            year = calendar_years(result)
-            # a year into operation, so that ramps are over, and the last record it runs in
-            early = record_of(result, float(year[times[0]] - year[0]) + 1.0)
-            for time in dict.fromkeys((min(early, int(times[-1])), int(times[-1]))):
-                columns.append((f"{plant} {year[time]:.0f}", number, time))
-        rows = []
-        for series, factor, unit, places in _STREAMS:
-            if f"plant_{series}" not in result:
-                continue
-            values = result[f"plant_{series}"].values / factor
-            chosen = [float(values[number, time]) for _, number, time in columns]
-            if series in _SILENT and not any(chosen):
-                continue
-            cells = [digits(value, places) for value in chosen]
-            rows.append([PLANT_SERIES[series].long_name, unit, *cells])
-        headings = ["stream or power", "unit", *(label for label, _, _ in columns)]
-        tables.append(
-            Table(
-                f"{name}: plants a year after their start and at the end.", headings, rows, 2
-            )
-        )
-    return tables
-
-
-_WATER = (
-    ("flow_m3_s", "flow", "m³/s", 2),
-    ("temperature_degC", "temperature", "°C", 2),
-    ("pH", "pH", "1", 2),
-    ("density_kg_m3", "density at air pressure", "kg/m³", 2),
-    ("salinity_g_kg", "salinity", "g/kg", 2),
-    ("solids_kg_m3", "solids", "kg/m³", 3),
-    ("CH4_mol_m3", "CH4", "mol/m³", 2),
-    ("CO2_mol_m3", "free CO2", "mol/m³", 2),
-    ("N2_mol_m3", "N2", "mol/m³", 3),
-    ("H2S_mol_m3", "H2S", "mol/m³", 3),
-    ("DIC_mol_m3", "DIC", "mol/m³", 2),
-    ("alkalinity_mol_m3", "alkalinity", "eq/m³", 2),
-    ("calcium_mol_m3", "calcium", "mol/m³", 2),
-)
-_GAS = (
-    ("flow_mol_s", "flow", "mol/s", 1),
-    ("normal_flow_m3_h", "flow at 0 °C, 1 atm", "m³/h", 0),
-    ("temperature_degC", "temperature", "°C", 2),
-    ("pressure_bar", "pressure", "bar", 2),
-    ("CH4_share", "CH4", "1", 4),
-    ("CO2_share", "CO2", "1", 4),
-    ("N2_share", "N2", "1", 4),
-    ("H2S_share", "H2S", "1", 5),
-    ("H2O_share", "water vapour", "1", 4),
-)
-
-
-def stream_tables(
-    streams: Mapping[str, Sequence[Mapping[str, float | str]]],
-) -> list[Table]:
-    """Return two tables for each plant, its water and its gas, a column per stream."""
-    tables = []
-    for plant, listed in streams.items():
-        for kind, shown in (("water", _WATER), ("gas", _GAS)):
-            flow = shown[0][0]
-            some = [row for row in listed if row["kind"] == kind and float(row[flow]) > 0.0]
-            if not some:
-                continue
-            rows = [
-                [name, unit, *(digits(float(row.get(key, np.nan)), places) for row in some)]
-                for key, name, unit, places in shown
-            ]
-            headings = [kind, "unit", *(str(row["stream"]) for row in some)]
-            tables.append(
-                Table(f"{plant}: streams of {kind} with today's feed.", headings, rows, 2)
-            )
-    return tables
-
-
 def chosen_years(result: xr.Dataset) -> list[float]:
     """Return the years after the start at which profiles and tables stand."""
     passed = calendar_years(result)
@@ -326,37 +210,3 @@ def methane_table(results: Mapping[str, xr.Dataset]) -> Table:
             ("methane_vented", "vented [Mt]", per_tonne, 3),
         ],
     )
-
-
-def separator_tables(sweep: xr.Dataset) -> list[Table]:
-    """Return outcomes at chosen pressures, and the best pressure for every aim with why."""
-    pressures = sweep["pressure"].values
-    chosen = np.unique(np.linspace(0, len(pressures) - 1, 7).astype(int))
-    rows = [
-        [
-            str(case),
-            digits(float(pressures[at]) / 1e5, 2),
-            *(
-                digits(float(sweep[name].sel(case=case)[at]) / factor, 3)
-                for name, factor in (("recovery", 1.0), ("purity", 1.0), ("net_energy", 1e6))
-            ),
-        ]
-        for case in sweep["case"].values
-        for at in chosen
-    ]
-    headings = ["case", "pressure [bar]", "recovery [1]", "purity [1]", "net energy [MJ/m³]"]
-    tables = [Table("Separator at chosen pressures.", headings, rows)]
-    if "best_pressure" in sweep:
-        best = [
-            [
-                str(case),
-                str(aim),
-                digits(float(sweep["best_pressure"].sel(case=case, aim=aim)) / 1e5, 2),
-                str(sweep["why"].sel(case=case, aim=aim).item()),
-            ]
-            for aim in sweep["aim"].values
-            for case in sweep["case"].values
-        ]
-        headings = ["case", "aim", "best pressure [bar]", "why"]
-        tables.append(Table("Best pressure by what is aimed at.", headings, best, left=4))
-    return tables

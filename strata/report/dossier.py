@@ -19,8 +19,10 @@ from matplotlib.figure import Figure
 from strata.caution import CAUTION
 from strata.lake.site import Lake
 from strata.limits import Limits, Verdict
+from strata.plant.account import Account
 from strata.plant.plan import Plan
-from strata.report import blocks, figures, words
+from strata.report import blocks, figures, plant_tables, sweeps, words
+from strata.report.diagram import diagram
 from strata.results import replacing
 
 _DPI = 110
@@ -49,7 +51,7 @@ def dossier(
     lake: Lake | None = None,
     plans: Mapping[str, Plan] | None = None,
     separate: Mapping[str, xr.Dataset] | None = None,
-    streams: Mapping[str, Sequence[Mapping[str, float | str]]] | None = None,
+    accounts: Mapping[str, Account] | None = None,
     date: datetime.date | None = None,
     command: str = "",
 ) -> None:
@@ -70,8 +72,8 @@ def dossier(
         Name of the plan -> Plan, for the words on what its plants do.
     separate : mapping, optional
         Name -> separator sweep (``strata.studies.separate``).
-    streams : mapping, optional
-        Name of a plant -> its streams (``strata.plant.account.stream_rows``).
+    accounts : mapping, optional
+        Name of a plant -> what it does with today's water, for its diagram and tables.
     date : datetime.date, optional
         Today if not given.
     command : str
@@ -89,7 +91,7 @@ def dossier(
         lake,
         plans or {},
         separate or {},
-        streams or {},
+        accounts or {},
         date,
         command,
     )
@@ -104,7 +106,7 @@ def page(
     lake: Lake | None,
     plans: Mapping[str, Plan],
     separate: Mapping[str, xr.Dataset],
-    streams: Mapping[str, Sequence[Mapping[str, float | str]]],
+    accounts: Mapping[str, Account],
     date: datetime.date | None,
     command: str,
 ) -> str:
@@ -121,6 +123,7 @@ def page(
     names = list(results)
     with figures.house_style():
         pictures = _pictures(results, verdicts, limits, lake, separate)
+        plants = [_of_plant(name, account, first) for name, account in accounts.items()]
     return environment.get_template("dossier.html").render(
         title=f"{first.attrs['lake_name']}: what gas extraction does to it, {start} to {end}",
         subtitle=f"{len(results) - 1} plans beside the lake left alone, under the limits of "
@@ -148,7 +151,8 @@ def page(
             for name, result in results.items()
         ],
         figures=pictures,
-        stream_tables=[*blocks.plant_tables(results), *blocks.stream_tables(streams)],
+        plant_tables=plant_tables.plant_tables(results),
+        plant_figures=plants,
         ledger_table=blocks.ledger(results),
         warnings={
             name: [line for line in str(result.attrs["warnings"]).split("\n") if line]
@@ -187,6 +191,18 @@ def _picture(
     source, width, height = _embedded(figure)
     finding, alt = said
     return Picture(source, alt, finding, reading, width, height, tuple(tables))
+
+
+def _of_plant(name: str, account: Account, baseline: xr.Dataset) -> Picture:
+    """Return the diagram of a plant with its tables."""
+    floor, gradient = float(baseline["face"][-1]), float(baseline["gradient_depth"][0])
+    return _picture(
+        diagram(account, floor, gradient),
+        words.diagram_caption(name, account),
+        "Numbers stand for the streams listed below the drawing; solid is water, dashed is "
+        "gas; pipes end at their true depths.",
+        [plant_tables.figures(name, account), *plant_tables.streams(name, account)],
+    )
 
 
 def _pictures(
@@ -258,12 +274,12 @@ def _pictures(
     for name, sweep in separate.items():
         drawn.append(
             _picture(
-                figures.separator(sweep),
+                sweeps.separator(sweep),
                 words.separator_caption(sweep),
                 f"Separator of {name}; binding CO2 lowers what is recovered at a given "
                 "pressure, "
                 "raises the purity, and so moves the best pressure.",
-                blocks.separator_tables(sweep),
+                plant_tables.by_pressure(sweep),
             )
         )
     if lake is not None:

@@ -43,7 +43,7 @@ def house_style() -> Iterator[None]:
         yield
 
 
-def _grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figure, np.ndarray]:
+def grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figure, np.ndarray]:
     """Return a figure with an array of axes, the legend's room on top."""
     figure = Figure(figsize=(WIDTH, height))
     top = 1.0 - 0.62 / height
@@ -67,7 +67,7 @@ def _grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figur
     return figure, axes
 
 
-def _legend(figure: Figure, source: Any, columns: int = 6) -> None:
+def legend(figure: Figure, source: Any, columns: int = 6) -> None:
     """Put one legend for all axes on top."""
     handles, labels = source.get_legend_handles_labels()
     figure.legend(handles, labels, loc="upper left", ncols=columns, bbox_to_anchor=(0.06, 1.0))
@@ -79,12 +79,12 @@ def limits_through_time(
     """Return one small drawing per limit, every plan in it."""
     columns = 3
     rows = -(-len(limits.limits) // columns)
-    figure, axes = _grid(rows, columns, 0.9 + 2.1 * rows, hspace=0.55)
+    figure, axes = grid(rows, columns, 0.9 + 2.1 * rows, hspace=0.55)
     for ax, limit in zip(axes.flat, limits.limits, strict=False):
         plot.against_limit(results, limit, ax, baseline)
     for ax in axes.flat[len(limits.limits) :]:
         ax.set_axis_off()
-    _legend(figure, axes.flat[0])
+    legend(figure, axes.flat[0])
     return figure
 
 
@@ -92,7 +92,7 @@ def main_gradient(
     results: Mapping[str, xr.Dataset], limits: Limits, baseline: xr.Dataset | None
 ) -> Figure:
     """Return depth and strength of the main gradient of every plan, with their limits."""
-    figure, ((left, right),) = _grid(1, 2, 3.3, wspace=0.22)
+    figure, ((left, right),) = grid(1, 2, 3.3, wspace=0.22)
     plot.through_time(results, "gradient_depth", left)
     plot.through_time(results, "gradient_strength", right)
     first = next(iter(results.values()))
@@ -110,27 +110,27 @@ def main_gradient(
     right.set_ylim(bottom=0.0)
     left.set_ylabel("depth of the main gradient [m]")
     right.set_ylabel("density step [kg/m³]")
-    _legend(figure, left)
+    legend(figure, left)
     return figure
 
 
 def gas_pressure(results: Mapping[str, xr.Dataset]) -> Figure:
     """Return gas pressure against depth at the end of every plan, the start as a thin line."""
-    figure, axes = _grid(1, len(results), 3.9, sharey=True, wspace=0.08)
+    figure, axes = grid(1, len(results), 3.9, sharey=True, wspace=0.08)
     for number, (ax, (name, result)) in enumerate(zip(axes[0], results.items(), strict=True)):
         years = plot.calendar_years(result)
         plot.gas_pressure(result, ax, year=float(years[-1] - years[0]), compare=0.0)
         ax.set_title(name, loc="left")
         if number:
             ax.set_ylabel("")
-    _legend(figure, axes[0, 0])
+    legend(figure, axes[0, 0])
     return figure
 
 
 def sections(results: Mapping[str, xr.Dataset], variables: Sequence[str]) -> Figure:
     """Return depth-time sections: a row per variable, a column per plan, one scale per row."""
     rows = len(variables)
-    figure, axes = _grid(
+    figure, axes = grid(
         rows,
         len(results),
         0.7 + 1.95 * rows,
@@ -175,7 +175,7 @@ def differences(
     """Return sections of plan less lake left alone: a row per variable, a column per plan."""
     rows = len(variables)
     height = 0.7 + 1.95 * rows
-    figure, axes = _grid(
+    figure, axes = grid(
         rows,
         len(results),
         height,
@@ -216,7 +216,7 @@ def profiles(results: Mapping[str, xr.Dataset], years: Sequence[float]) -> Figur
     """Return profiles at chosen years: a row per plan, a column per variable."""
     variables = ("temperature", "salinity", "methane", "carbon_dioxide")
     rows = len(results)
-    figure, axes = _grid(
+    figure, axes = grid(
         rows,
         len(variables),
         0.8 + 2.3 * rows,
@@ -234,13 +234,13 @@ def profiles(results: Mapping[str, xr.Dataset], years: Sequence[float]) -> Figur
             if row < rows - 1:
                 ax.set_xlabel("")
         axes[row, 0].set_title(name, loc="left")
-    _legend(figure, axes[0, 0])
+    legend(figure, axes[0, 0])
     return figure
 
 
 def methane(results: Mapping[str, xr.Dataset]) -> Figure:
     """Return methane in place by zone, and where it went, for every plan."""
-    figure, axes = _grid(
+    figure, axes = grid(
         2, len(results), 4.9, sharex=True, sharey="row", wspace=0.1, hspace=0.42
     )
     for column, (name, result) in enumerate(results.items()):
@@ -251,26 +251,33 @@ def methane(results: Mapping[str, xr.Dataset]) -> Figure:
         if column:
             axes[0, column].set_ylabel("")
             axes[1, column].set_ylabel("")
-    _legend(figure, axes[0, 0])
+    legend(figure, axes[0, 0])
     handles, labels = axes[1, 0].get_legend_handles_labels()
     figure.legend(handles, labels, loc="upper left", ncols=3, bbox_to_anchor=(0.06, 0.505))
     return figure
 
 
 def plants(results: Mapping[str, xr.Dataset]) -> Figure:
-    """Return net power and purity of the product of every plant, a column per plan."""
-    figure, axes = _grid(
-        2, len(results), 4.6, sharex=True, sharey="row", wspace=0.1, hspace=0.15
+    """Return power, purity of the product and trap depth of every plant, a column per plan."""
+    figure, axes = grid(
+        3, len(results), 6.6, sharex=True, sharey="row", wspace=0.1, hspace=0.15
     )
     for column, (name, result) in enumerate(results.items()):
-        plot.plant_series(result, "net_power", axes[0, column], 1e6, "MW")
-        plot.plant_series(result, "product_purity", axes[1, column])
-        axes[0, column].set_title(name, loc="left")
-        axes[0, column].set_xlabel("")
-        axes[0, column].set_ylabel("" if column else "net power [MW]")
-        axes[1, column].set_ylabel("" if column else "CH$_4$ in the product [1]")
-        axes[1, column].set_ylim(0.0, 1.02)
-        axes[0, column].legend(loc="best")
+        power, purity, depth = axes[:, column]
+        plot.plant_series(result, "net_power", power, 1e6, "MW")
+        plot.plant_series(result, "product_purity", purity)
+        *_, gradient = plot.trap_depth(result, depth)
+        power.set_title(name, loc="left")
+        power.set_ylabel("" if column else "net power [MW]")
+        purity.set_ylabel("" if column else "CH$_4$ in the product [1]")
+        purity.set_ylim(0.0, 1.02)
+        for ax in (power, purity):
+            ax.set_xlabel("")
+        if column:
+            depth.set_ylabel("")
+        power.legend(loc="best")
+    axes[2, 0].invert_yaxis()
+    axes[2, 0].legend(handles=[gradient], loc="best")
     return figure
 
 
@@ -285,7 +292,7 @@ _CAST_NAMES = {
 
 def today(result: xr.Dataset, lake: Lake) -> Figure:
     """Return today's column: profiles with the casts' readings, gas pressure, stability."""
-    figure, axes = _grid(1, 5, 4.2, sharey=True, wspace=0.14)
+    figure, axes = grid(1, 5, 4.2, sharey=True, wspace=0.14)
     first = result.isel(time=slice(0, 1))
     row = axes[0]
     shown = ("temperature", "salinity", "methane", "carbon_dioxide")
@@ -316,18 +323,3 @@ def _main_extent(result: xr.Dataset) -> list[tuple[float, float]]:
 
 def _reading(lake: Lake, name: str) -> Profile | None:
     return lake.cast.profiles.get(name)
-
-
-def separator(sweep: xr.Dataset) -> Figure:
-    """Return recovery, purity and net energy against pressure, CO2 free and bound."""
-    figure, (row,) = _grid(1, 3, 3.3, wspace=0.3)
-    plot.separator_sweep(sweep, "recovery", row[0], label="CH$_4$ recovered [1]")
-    plot.separator_sweep(sweep, "purity", row[1], label="CH$_4$ in the gas [1]")
-    plot.separator_sweep(
-        sweep, "net_energy", row[2], 1e6, label="net energy [MJ per m³ of feed]"
-    )
-    row[0].set_ylim(0.0, 1.02)
-    row[1].set_ylim(0.0, 1.02)
-    row[2].margins(y=0.15)
-    _legend(figure, row[0])
-    return figure

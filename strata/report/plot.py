@@ -480,7 +480,21 @@ def plant_series(
     return artists
 
 
+def trap_depth(result: xr.Dataset, ax: Axes) -> list[Artist]:
+    """Draw where the return water of every plant spreads, and the main gradient with it."""
+    artists = plant_series(result, "trap_depth", ax)
+    years, gradient = calendar_years(result), result["gradient_depth"].values
+    line: dict[str, Any] = {"color": "0.35", "linewidth": 1.0, "linestyle": (0, (6, 3))}
+    artists += ax.plot(years, gradient, **line, label="main gradient")
+    ax.set_ylabel("return water spreads at [m]")
+    return artists
+
+
 # Separator ----------------------------------------------------------------------------------
+
+
+#: Outcomes of which most is best, so that the best is marked.
+MOST = ("recovery", "heating_value", "net_energy", "return_density_excess")
 
 
 def separator_sweep(
@@ -502,24 +516,18 @@ def separator_sweep(
     """
     artists: list[Artist] = []
     pressure = sweep["pressure"].values / BAR
+    bests = []
     for number, case in enumerate(sweep["case"].values):
         values = sweep[variable].sel(case=case).values / factor
         style = plan_style(number + 1)
         artists += ax.plot(pressure, values, **style, label=str(case))
-        if variable == "net_energy" and np.isfinite(values).any():
+        if variable in MOST and np.isfinite(values).any():
             best = int(np.nanargmax(values))
-            artists += ax.plot(
-                pressure[best], values[best], "o", color=style["color"], markersize=6
-            )
-            artists.append(
-                ax.annotate(
-                    f"best at {pressure[best]:.2g} bar",
-                    (pressure[best], values[best]),
-                    xytext=(4, 7 if number == 0 else -14),
-                    textcoords="offset points",
-                    fontsize="small",
-                )
-            )
+            dot = {"color": style["color"], "markersize": 6, "linestyle": "none"}
+            artists += ax.plot(pressure[best], values[best], "o", **dot)
+            bests.append(f"{str(case).removeprefix('CO2 ')} {pressure[best]:.2g}")
+    if bests:
+        ax.set_title(f"best: {', '.join(bests)} bar", loc="left", fontsize="medium")
     ax.set_xscale("log")
     ax.xaxis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
     ax.set_xlabel("separator pressure [bar]")

@@ -8,6 +8,7 @@ import xarray as xr
 from strata.gradients import main_gradient
 from strata.limits import BREACHED, UNCERTAIN, Limits, Verdict
 from strata.margins import cubic_kilometres
+from strata.plant.account import Account
 from strata.plant.plan import Plan
 from strata.report.tables import digits, end_numbers, gradients_of, mean_net_power
 
@@ -296,7 +297,34 @@ def plant_caption(results: Mapping[str, xr.Dataset]) -> tuple[str, str]:
                 f"product {running.min():.2f} to {running.max():.2f}"
             )
     caption = f"Averages: {'; '.join(parts)}" if parts else "No plant runs"
-    return caption + ".", f"Net power and purity of the product of every plant. {caption}."
+    caption += "." + trap_words(results)
+    return caption, f"Net power, purity, depth of the return water of every plant. {caption}"
+
+
+def diagram_caption(name: str, account: Account) -> tuple[str, str]:
+    """Return caption and alternative text of the diagram of a plant."""
+    found = account.figures()
+    caption = (
+        f"{name.capitalize()}: with today's feed at full load it recovers "
+        f"{100 * found['recovery']:.0f} % of the methane as gas of "
+        f"{100 * found['purity']:.0f} % CH4 and leaves {found['net_power_MW']:.1f} MW."
+    )
+    steps = listed([str(row["stream"]) for row in account.streams()])
+    alt = f"Diagram of the plant over a section of the lake. Streams: {steps}. {caption}"
+    return caption, alt
+
+
+def trap_words(results: Mapping[str, xr.Dataset]) -> str:
+    """Return between which depths the return water of every plan spreads."""
+    parts = []
+    for name, result in results.items():
+        if "plant_trap_depth" not in result:
+            continue
+        depth = result["plant_trap_depth"].values
+        depth = depth[np.isfinite(depth)]
+        if depth.size:
+            parts.append(f"{name}: {depth.min():.0f} to {depth.max():.0f} m")
+    return f" Return water spreads at {'; '.join(parts)}." if parts else ""
 
 
 def today_caption(result: xr.Dataset) -> tuple[str, str]:

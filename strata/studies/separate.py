@@ -352,7 +352,7 @@ def separate_in_two(
 ) -> xr.Dataset:
     """Return the map of outcomes over the pressures of two stages, their gas unwashed.
 
-    Lime is as the plan has it.  Where the second pressure is not below the first there is no
+    Lime is as the plan has it.  Where the second pressure is above the first there is no
     second stage, and the outcome is nan.  Arguments as :func:`separate`; dimensions
     ``first_pressure`` and ``second_pressure`` [Pa].
     """
@@ -364,7 +364,7 @@ def separate_in_two(
     missing = dict.fromkeys(OUTCOMES, np.nan)
 
     def pair(first: float, second: float) -> dict[str, float]:
-        if second >= first:
+        if second > first:
             return missing
         stages = [replace(_stage(base, n), gas_to="product") for n in (0, 1)]
         two = (replace(stages[0], pressure=first), replace(stages[1], pressure=second))

@@ -1,0 +1,137 @@
+"""The diagram of a plant and the figures and tables of its sweeps show what the plant does."""
+
+from dataclasses import replace
+
+import matplotlib
+import numpy as np
+import pytest
+import synthetic
+from matplotlib.figure import Figure
+
+from strata.plant.account import Account
+from strata.plant.operate import operate
+from strata.plant.plan import Intake, Lime, Plan, Return, Riser, Stage, Wash
+from strata.report import plant_tables, sweeps
+from strata.report.diagram import diagram
+from strata.studies.today import study_plant
+from tests.plant_cases import DEEP, SHALLOW, SITE, simple_plant
+
+matplotlib.use("Agg")
+
+FULL = replace(
+    simple_plant(
+        Stage(4e5, gas_to="vent"),
+        Stage(2e5, gas_to="wash"),
+        Stage(0.8e5),
+        Stage(0.5e5, gas_to="return"),
+        lime=Lime(dose=30.0, settled=0.9),
+        wash=Wash(6e5, 2.0, 80.0, 5, 0.7),
+        further_intakes=(Intake(300.0, 0.4),),
+        riser=Riser(0.9, 5),
+    ),
+    return_water=Return(275.0, 100, 0.2),
+)
+ACCOUNT = Account(FULL, operate(FULL, DEEP, replace(SHALLOW, flow=2.0), SITE), SITE)
+
+
+@pytest.fixture(scope="module")
+def study():
+    lake = synthetic.lake(100)
+    plan = synthetic.plan("washed")
+    stages = (Stage(3e5, gas_to="wash"), Stage(1e5))
+    plant = replace(plan.plants[0], stages=stages, wash=Wash(8e5, 3.0, 80.0))
+    return study_plant(lake, Plan("washed", (plant,)))
+
+
+def words(figure):
+    figure.canvas.draw()
+    return [text.get_text() for ax in figure.axes for text in ax.texts]
+
+
+def test_every_stream_that_flows_has_its_number_in_the_drawing_and_its_line_in_the_table():
+    figure = diagram(ACCOUNT, 400.0, 207.0)
+    drawing, table = figure.axes
+    numbers = [text.get_text() for text in drawing.texts if text.get_bbox_patch()]
+    flowing = [row for row in ACCOUNT.streams() if row.get("flow_mol_s", 1.0) > 0.0]
+    assert sorted(map(int, numbers)) == list(range(1, len(flowing) + 1))
+    lines = [text.get_text() for text in table.texts]
+    for row in flowing:
+        assert row["stream"] in lines
+
+
+def test_a_diagram_names_every_unit_with_its_setting_and_power():
+    found = " ".join(words(diagram(ACCOUNT, 400.0)))
+    for name in ("riser", "lime", "stage 1", "stage 4", "wash tower", "product", "to the air"):
+        assert name in found
+    for setting in ("5 pipes", "of 0.9 m", "30 mol/m³", "0.8 bar", "345 m, 60 %", "275 m"):
+        assert setting in found
+    net = ACCOUNT.operation.power["net"] / 1e6
+    assert f"{net:+.2f}".replace("-", "−") in found
+
+
+def test_pipes_end_at_their_true_depths():
+    drawing = diagram(ACCOUNT, 400.0, 207.0).axes[0]
+    surface, floor = 25.0, 2.0  # of the section in the drawing
+    ends = {float(y) for line in drawing.lines for y in line.get_ydata()}
+    for depth in (345.0, 300.0, 275.0, 80.0, 207.0):
+        y = surface - (surface - floor) * depth / 400.0
+        assert min(abs(end - y) for end in ends) < 1e-9
+
+
+def test_no_words_in_a_box_reach_beyond_it():
+    figure = diagram(ACCOUNT, 400.0)
+    figure.canvas.draw()
+    drawing = figure.axes[0]
+    boxes = [patch.get_window_extent() for patch in drawing.patches if patch.get_width() > 5]
+    assert len(boxes) == 8
+    for text in drawing.texts:
+        extent = text.get_window_extent()
+        middle = 0.5 * (extent.x0 + extent.x1), 0.5 * (extent.y0 + extent.y1)
+        for box in boxes:
+            if box.contains(*middle):
+                assert extent.width < 1.12 * box.width, text.get_text()
+
+
+def test_the_map_of_two_pressures_marks_the_best_pair_and_the_plans(study):
+    sweep = study.sweeps["two pressures"]
+    _, best, planned = sweeps.pressure_map(
+        sweep, "net_energy", Figure().subplots(), planned=[3.0, 1.0]
+    )
+    x, y = best.get_xdata()[0] * 1e5, best.get_ydata()[0] * 1e5
+    pair = {"first_pressure": x, "second_pressure": y}
+    value = float(sweep["net_energy"].sel(pair, method="nearest"))
+    assert value == float(sweep["net_energy"].max())
+    assert (planned.get_xdata()[0], planned.get_ydata()[0]) == (3.0, 1.0)
+    assert y < x
+
+
+def test_a_sweep_of_wash_or_lime_is_drawn_with_the_setting_of_the_plan(study):
+    for name, over, planned in (("wash", "wash_ratio", 0.25), ("lime", "dose", 0.0)):
+        figure = getattr(sweeps, name)(study.sweeps[name], study.account)
+        curve, mark = figure.axes[0].lines
+        np.testing.assert_allclose(curve.get_xdata(), study.sweeps[name][over])
+        assert mark.get_xdata()[0] == pytest.approx(planned)
+
+
+def test_both_cases_share_every_axes_of_the_separator_figure(study):
+    figure = sweeps.separator(study.sweeps["pressure"])
+    assert len(figure.axes) == 6
+    for ax in figure.axes:
+        curves = [line.get_label() for line in ax.lines if line.get_marker() == "None"]
+        assert curves == ["CO2 free", "CO2 bound"]
+        assert ax.get_xscale() == "log"
+    assert figure.axes[2].get_title("left").startswith("best: free")
+
+
+def test_tables_of_a_study_hold_the_best_pressure_and_every_sweep(study):
+    found = plant_tables.of_study("north", study.account, study.sweeps)
+    captions = " ".join(table.caption for table in found)
+    for part in ("product, power and air", "streams of water", "streams of gas",
+                 "CO2 left free and CO2 bound", "Best pressure", "best pair of pressures",
+                 "Wash water", "Lime", "returned water goes"):  # fmt: skip
+        assert part in captions
+    for table in found:
+        assert all(len(row) == len(table.headings) for row in table.rows)
+    one = next(table for table in found if table.caption.startswith("One separator"))
+    best = study.sweeps["pressure"]["best_pressure"].sel(case="CO2 free", aim="net energy")
+    assert f"{float(best) / 1e5:.2f}" in [row[1] for row in one.rows]

@@ -129,7 +129,7 @@ def keys(model: type[Table]) -> dict[str, Any]:
     }
 
 
-def _plain(kind: Any) -> tuple[Any, tuple[Any, ...]]:
+def plain_type(kind: Any) -> tuple[Any, tuple[Any, ...]]:
     """Return a type without ``| None``, and what is said about it."""
     notes: tuple[Any, ...] = ()
     while True:
@@ -146,7 +146,7 @@ def _kind_at(model: type[Table], place: Place) -> Any:
     """Return the type that a place in a document must have."""
     kind: Any = model
     for token in place:
-        plain, _ = _plain(kind)
+        plain, _ = plain_type(kind)
         if isinstance(plain, type) and issubclass(plain, Table):
             kind = keys(plain)[str(token)]
         else:
@@ -156,7 +156,7 @@ def _kind_at(model: type[Table], place: Place) -> Any:
 
 def allowed(kind: Any, unit: str) -> str:
     """Say what a value of a type may be."""
-    plain, notes = _plain(kind)
+    plain, notes = plain_type(kind)
     for note in notes:
         if isinstance(note, Between):
             number = "a whole number from " if plain is int else "a number from "
@@ -208,7 +208,7 @@ def _message(error: Any, model: type[Table], place: Place) -> str:
     kind = error["type"]
     key = next((str(token) for token in reversed(place) if isinstance(token, str)), "")
     if kind == "extra_forbidden":
-        table, _ = _plain(_kind_at(model, place[:-1]))
+        table, _ = plain_type(_kind_at(model, place[:-1]))
         return _unknown(str(place[-1]), list(keys(table)))
     target = _kind_at(model, place)
     unit = units.words(key)
@@ -220,7 +220,7 @@ def _message(error: Any, model: type[Table], place: Place) -> str:
     if kind == "string_too_short":
         return "is empty; text in quotes is required"
     if kind == "out_of_range":
-        between = next(note for note in _plain(target)[1] if isinstance(note, Between))
+        between = next(note for note in plain_type(target)[1] if isinstance(note, Between))
         return f"is {show(error['input'])}; {between.words(unit)}"
     return f"is {show(error['input'])}; {allowed(target, unit)}"
 
@@ -271,7 +271,7 @@ def validate(
     for finding in findings:
         if finding["type"] == "extra_forbidden":
             *table, key = finding["loc"]
-            known = list(keys(_plain(_kind_at(model, tuple(table)))[0]))
+            known = list(keys(plain_type(_kind_at(model, tuple(table)))[0]))
             right = _without_unit(str(key), known)
             close = difflib.get_close_matches(str(key), known, n=1, cutoff=0.5)
             meant |= {(*table, name) for name in (right, *close) if name}

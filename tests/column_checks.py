@@ -298,7 +298,7 @@ def lifting(layers=200, years=5.0):
 # A staircase ------------------------------------------------------------------------------
 
 
-def staircase(layer, years=10.0):
+def staircase(layer, years=10.0, window=7.0):
     """Return the mean heat flux through the middle of a gradient with a staircase [W m-2].
 
     Warm salty water under cool fresh, density ratio 3.3, the gradient 20 m thick; nothing but
@@ -307,7 +307,8 @@ def staircase(layer, years=10.0):
     floor = 120.0
     faces = np.linspace(0.0, floor, round(floor / layer) + 1)
     lake = plain_lake(faces, diffusivity=1e-14)
-    lake = replace(lake, mixing=replace(lake.mixing, staircase_step=0.7))
+    stairs = replace(lake.mixing, staircase_step=0.7, staircase_window=window)
+    lake = replace(lake, mixing=stairs)
 
     def rise(z):
         return 0.5 * (1 + np.tanh((z - 60.0) / 8.0))

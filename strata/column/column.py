@@ -12,8 +12,18 @@ from numpy.typing import NDArray
 
 from strata import ranges
 from strata.column import kernel
+from strata.column.laws import bed_coefficient, law_of, staircase_window
 from strata.column.mixing import staircase_drive
-from strata.column.streams import Give, Source, Surroundings, follow, spread_evenly, stack
+from strata.column.streams import (
+    Give,
+    Source,
+    Surroundings,
+    follow,
+    plunge,
+    spread_evenly,
+    stack,
+)
+from strata.column.supply import supply_of
 from strata.column.surface import air_exchange, wind_power
 from strata.column.tracers import (
     DIC,
@@ -114,7 +124,8 @@ class Column:
         )
         self.hydrogen = np.full(self.basin.layers, 1e-4)
         self.face_pressure, self.pressure = self._hydrostatic(values)
-        self.grid = self._grid(width)
+        self._supply = supply_of(lake, self.basin, self.tracers, width, self.heat_capacity)
+        self.grid = self._grid()
         self.state = kernel.State(
             values=values,
             hydrogen=self.hydrogen,
@@ -126,7 +137,7 @@ class Column:
         count = self.basin.layers + 1
         self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
         self._springs = [self._spring_source(spring) for spring in lake.springs]
-        self._rivers = [self.river(river) for river in lake.rivers]
+        self._rivers = [self._river_source(river) for river in lake.rivers]
         self._air = _AirTable.of(lake)
         self.refresh()
 
@@ -237,12 +248,14 @@ class Column:
         )
         return float(mixed_layer_depth(self.basin.depth, density))
 
-    def _grid(self, width: int) -> kernel.Grid:
+    def _grid(self) -> kernel.Grid:
         """Return what never changes in a run, as the kernel wants it."""
         basin, lake = self.basin, self.lake
         weight, start = face_weights(basin.volume)
         distance = np.concatenate([[1.0], np.diff(basin.depth), [1.0]])
         mixing, rates = lake.mixing, lake.reactions
+        law = law_of(mixing, basin)
+        window, reach = staircase_window(basin, mixing.staircase_window)
         return kernel.Grid(
             volume=basin.volume,
             area=basin.area,
@@ -255,7 +268,11 @@ class Column:
             physics=np.array(
                 [self.gravity, lake.site.haline_contraction, mixing.convection_efficiency]
             ),
-            mixing=np.array([mixing.coefficient, mixing.least, mixing.most]),
+            mixing=np.array([law.power, law.least, law.most]),
+            turbulent=law.coefficient,
+            at_bed=bed_coefficient(mixing, basin, REFERENCE_DENSITY),
+            window=window,
+            reach=reach,
             rates=np.array(
                 [
                     rates.methane_oxidation,
@@ -266,21 +283,12 @@ class Column:
                     rates.phosphate_removal,
                 ]
             ),
-            bed=basin.bed_area[:, None] * self._bed_flux(width),
+            steady=self._supply.bed + self._supply.sources,
+            decay=self._supply.decay,
+            conversion=self._supply.conversion,
             molar_mass=self.molar_mass,
             molar_volume=self.molar_volume,
         )
-
-    def _bed_flux(self, width: int) -> Array:
-        """Return the flux of each tracer out of the bed of each layer [amount m-2 s-1]."""
-        flux = np.zeros((self.basin.layers, width))
-        for source in self.lake.bed:
-            share = self.basin.overlap(source.top, source.foot)
-            if source.tracer == "heat":
-                flux[:, TEMPERATURE] += share * source.flux / self.heat_capacity
-            else:
-                flux[:, index(source.tracer)] += share * source.flux
-        return flux
 
     @property
     def heat_capacity(self) -> float:
@@ -424,22 +432,34 @@ class Column:
             given, entrained = path.given, path.entrained
         return Give(kernel.SPRINGS, spring.flow, spring.flow * row, given, entrained)
 
-    def river(self, river: River) -> Give:
-        """Return a river as the kernel holds it: into the top layer."""
-        row, _, _ = self.parcel(river.temperature, river.salinity, river.dissolved, 0.0)
-        given = np.zeros(self.basin.layers)
-        given[0] = 1.0
-        return Give(
-            kind=kernel.RIVERS,
-            water=river.flow,
-            added=river.flow * row,
-            given=given,
-            entrained=np.zeros(self.basin.layers),
+    def _river_source(self, river: River) -> tuple[River, Array, Source]:
+        """Return a river with what it carries and as a source at the surface."""
+        row, mass, space = self.parcel(river.temperature, river.salinity, river.dissolved, 0.0)
+        if f"river_{river.name}" in self.tags:
+            row[index(f"river_{river.name}", self.tags)] = 1.0
+        source = Source(
+            name=f"river {river.name}",
+            depth=0.0,
+            flow=river.flow,
+            temperature=river.temperature,
+            salinity=river.salinity,
+            gas_mass=mass,
+            gas_volume=space,
         )
+        return river, row, source
+
+    def _river(self, river: River, row: Array, source: Source, around: Surroundings) -> Give:
+        """Return a river as it enters now: over the lake, or under to its neutral level."""
+        given, entrained = plunge(
+            source, around, self.seen.stability[1:-1], self.lake.mixing.plunge
+        )
+        return Give(kernel.RIVERS, river.flow, river.flow * row, given, entrained)
 
     def natural(self, around: Surroundings) -> list[Give]:
         """Return all springs and rivers as they enter the column as it is."""
-        return [self._spring(*spring, around) for spring in self._springs] + self._rivers
+        return [self._spring(*spring, around) for spring in self._springs] + [
+            self._river(*river, around) for river in self._rivers
+        ]
 
     def _exchange(self, wind_speed: float) -> Array:
         """Return transfer velocity [m s-1] and equilibrium with air, per tracer."""
@@ -534,7 +554,8 @@ class Column:
             ),
             exchange=self._exchange(weather.wind_speed),
             reference=watched,
-            from_bed=self.grid.bed.sum(axis=0),
+            from_bed=self._supply.bed_total,
+            from_sources=self._supply.source_total,
             **vars(stacked),
         )
         code, done, layer, tracer = kernel.advance(

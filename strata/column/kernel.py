@@ -16,7 +16,7 @@ from strata.column.mixing import (
     staircase_diffusivity,
     turbulent_diffusivity,
 )
-from strata.column.reactions import react
+from strata.column.reactions import decay, react, reduce_carbon
 from strata.column.surface import deepen
 from strata.column.tracers import (
     ALKALINITY,
@@ -51,8 +51,10 @@ LEDGER_TERMS = (
     "reactions",
     "intake",
     "return",
+    "sources",
 )
 SURFACE, RAIN, EVAPORATION, OUTLET, RIVERS, SPRINGS, BED, REACTIONS, INTAKE, RETURN = range(10)
+SOURCES = 10
 
 #: Feed changes by more than this share: the plant is solved again.
 FEED_TOLERANCE = 0.005
@@ -70,9 +72,15 @@ class Grid(NamedTuple):
     start: NDArray[np.int64]  # (n + 1,)
     pressure: Array  # (n + 1,) Pa at the faces
     physics: Array  # gravity, haline contraction, convection efficiency
-    mixing: Array  # a, least, most
+    mixing: Array  # power of the turbulent law, least, most
+    turbulent: Array  # (n + 1,) coefficient of the turbulent law
+    at_bed: Array  # (n + 1,) of what currents along the bed add, m2 s-3
+    window: NDArray[np.int64]  # (n + 1, 2) layer over each end of the staircase's window
+    reach: Array  # (n + 1, 3) shares of the way to the next layer; span of the window, m
     rates: Array  # of the reactions, see there
-    bed: Array  # (n, m) what the bed gives each layer, amount per second
+    steady: Array  # (n, m) what bed and sources give each layer, amount per second
+    decay: Array  # (n, m) rates of loss, s-1; no rows where nothing decays
+    conversion: Array  # (n,) rate of CO2 to methane, s-1; empty where there is none
     molar_mass: Array  # CO2, CH4, N2, O2, H2S, kg/mol
     molar_volume: Array  # the same, m3/mol
 
@@ -98,6 +106,7 @@ class Held(NamedTuple):
     plume_span: NDArray[np.int64]  # (k, 2) the same of what give k takes along
     give_span: NDArray[np.int64]  # (k, 2) and of where it ends
     from_bed: Array  # (m,) what the bed gives in all, amount per second
+    from_sources: Array  # (m,) what the sources give in all, amount per second
     kind: NDArray[np.int64]  # (k,) row of the ledger
     reference: Array  # (j, m) concentration at which the factors were found; NaN: none
 
@@ -212,9 +221,10 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn
     takes, gives = held.take.shape[0], held.water.shape[0]
     for i in range(count):
         for m in range(tracers):
-            gain[i, m] = dt * grid.bed[i, m]
+            gain[i, m] = dt * grid.steady[i, m]
     for m in range(tracers):
         state.books[BED, m] += dt * held.from_bed[m]
+        state.books[SOURCES, m] += dt * held.from_sources[m]
     for j in range(takes):
         for m in range(tracers):
             withdrawn[j, m] = 0.0
@@ -318,9 +328,10 @@ def advance(state, grid, held, seen, steps, dt):
     withdrawn = np.empty((held.take.shape[0], tracers))
     gas_mass = np.empty(count)
     gas_volume = np.empty(count)
+    lift = np.empty(count)
     _load(state, grid, held, gas_mass, gas_volume)
     _compare(values, grid, gas_mass, gas_volume, seen)
-    _conduct(values, grid, held, seen, conductance)
+    _conduct(values, grid, held, seen, conductance, lift)
     face_flow(held, seen.flow)
     outlet = seen.flow[0] + (held.air[3] - held.air[4]) * grid.area[0]
     code, layer, parts = _parts(grid, held, seen.flow, outlet, dt)
@@ -337,6 +348,18 @@ def advance(state, grid, held, seen, steps, dt):
             dt,
             state.books[REACTIONS],
         )
+        if grid.decay.shape[0] > 0:
+            decay(values, grid.decay, grid.volume, dt, state.books[REACTIONS])
+        if grid.conversion.shape[0] > 0:
+            reduce_carbon(
+                values,
+                grid.conversion,
+                held.constants,
+                state.hydrogen,
+                grid.volume,
+                dt,
+                state.books[REACTIONS],
+            )
         for _ in range(parts):
             part = dt / parts
             exchange_with_streams(
@@ -346,7 +369,7 @@ def advance(state, grid, held, seen, steps, dt):
             for i in range(count):
                 for m in range(tracers):
                     values[i, m] += gain[i, m] / grid.volume[i]
-        _conduct(values, grid, held, seen, conductance)
+        _conduct(values, grid, held, seen, conductance, lift)
         diffuse(values, conductance, grid.volume, dt, work)
         _load(state, grid, held, gas_mass, gas_volume)
         state.mixed_depth[0] = deepen(
@@ -427,16 +450,35 @@ def _parts(grid, held, flow, outlet, dt):
 
 
 @compiled
-def _conduct(values, grid, held, seen, conductance):
-    """Fill the conductance of every inner face for every tracer [m3 s-1]."""
-    tracers = values.shape[1]
-    for f in range(1, values.shape[0]):
+def _conduct(values, grid, held, seen, conductance, lift):
+    """Fill the conductance of every inner face for every tracer [m3 s-1].
+
+    The staircase answers to the mean gradients over its window; ``lift`` (n) is workspace for
+    the buoyancy passed from the top down [m s-2].
+    """
+    count, tracers = values.shape
+    lift[0] = 0.0
+    for i in range(1, count):
+        lift[i] = lift[i - 1] + seen.stability[i] * grid.distance[i]
+    for f in range(1, count):
         turbulent = turbulent_diffusivity(
-            seen.stability[f], grid.mixing[0], grid.mixing[1], grid.mixing[2]
-        )
-        heat, solute = staircase_diffusivity(
             seen.stability[f],
-            (values[f, TEMPERATURE] - values[f - 1, TEMPERATURE]) / grid.distance[f],
+            grid.turbulent[f],
+            grid.at_bed[f],
+            grid.mixing[0],
+            grid.mixing[1],
+            grid.mixing[2],
+        )
+        up, down = grid.window[f, 0], grid.window[f, 1]
+        up_share, down_share, span = grid.reach[f, 0], grid.reach[f, 1], grid.reach[f, 2]
+        warming = values[down, TEMPERATURE] - values[up, TEMPERATURE]
+        warming += down_share * (values[down + 1, TEMPERATURE] - values[down, TEMPERATURE])
+        warming -= up_share * (values[up + 1, TEMPERATURE] - values[up, TEMPERATURE])
+        rise = lift[down] - lift[up] + down_share * (lift[down + 1] - lift[down])
+        rise -= up_share * (lift[up + 1] - lift[up])
+        heat, solute = staircase_diffusivity(
+            rise / span,
+            warming / span,
             held.expansion[f],
             grid.physics[0],
             held.drive[f],

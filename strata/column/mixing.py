@@ -1,10 +1,10 @@
 """How strongly the column mixes, and what happens where it is unstable.
 
-Turbulent diffusivity a / N [G84] within bounds; double diffusion through a staircase where
-warm salty water lies under cool fresh [K90]; layers that are heavier than the one below are
-pooled with it until neutral.
+Turbulent diffusivity c N^(-2 p) within bounds, which holds the laws that a site may choose
+(:mod:`strata.column.laws`); what currents along the bed add; double diffusion through a
+staircase where warm salty water lies under cool fresh [K90]; layers that are heavier than the
+one below are pooled with it until neutral.
 
-[G84] Gargett 1984, J. Mar. Res. 42:359-393.
 [K90] Kelley 1990, J. Geophys. Res. 95:3365-3371: flux F_H / (rho c_p) = C kappa
 (alpha g / (kappa nu))^(1/3) dT^(4/3) over a step dT of the staircase, C = 0.0032 exp(4.8 /
 R^0.72), density ratio R = beta S_z / (alpha T_z), flux ratio
@@ -21,11 +21,23 @@ STAIRCASE_RANGE = (1.1, 10.0)
 
 
 @compiled
-def turbulent_diffusivity(stability, coefficient, least, most):
-    """Return a / N within its bounds [m2 s-1]; the upper one where the pair is not stable."""
+def turbulent_diffusivity(stability, coefficient, at_bed, power, least, most):
+    """Return coefficient N^(-2 power) + at_bed / N^2 within bounds [m2 s-1].
+
+    ``stability`` is N^2 [s-2]; the upper bound where the pair is not stable, but for a power
+    of 0, which asks nothing of stability.
+    """
+    if power == 0.0 and at_bed == 0.0:
+        return min(max(coefficient, least), most)
     if stability <= 0.0:
         return most
-    return min(max(coefficient / math.sqrt(stability), least), most)
+    if power == 0.5:
+        inner = coefficient / math.sqrt(stability)
+    elif power == 0.0:
+        inner = coefficient
+    else:
+        inner = coefficient * stability ** (-power)
+    return min(max(inner + at_bed / stability, least), most)
 
 
 @compiled

@@ -2,11 +2,13 @@
 
 Oxidation of methane, CH4 + 2 O2 -> CO2 + 2 H2O (Monod in both); of sulfide, H2S + 2 O2 -> SO4
 + 2 H (second order); respiration, O2 -> CO2 (Monod in oxygen); uptake and sinking of phosphate
-in the surface layer (first order).
+in the surface layer (first order); first-order loss of any tracer; reduction of free CO2 to
+methane, CO2 + 4 H2 -> CH4 + 2 H2O (first order, alkalinity kept).
 """
 
 from strata.column.tracers import ALKALINITY, DIC, METHANE, OXYGEN, PHOSPHATE, SULFIDE
 from strata.compiled import compiled
+from strata.gas.carbonate import free_co2
 
 RESPIRATION_HALF_OXYGEN = 0.005  # mol m-3; order of 2-10 umol/L, common practice, no source
 
@@ -85,6 +87,34 @@ def react(values, rates, surface_depth, face, volume, dt, books):
         if rates[5] > 0.0 and face[i] < surface_depth:
             share = rates[5] * dt / (1.0 + rates[5] * dt)
             _book(values, books, i, PHOSPHATE, -share * values[i, PHOSPHATE], volume[i])
+
+
+@compiled
+def decay(values, rates, volume, dt, books):
+    """Let every tracer decay for one step at the rates of its layer, (n, m) [s-1]."""
+    for i in range(values.shape[0]):
+        for m in range(values.shape[1]):
+            if rates[i, m] > 0.0:
+                share = rates[i, m] * dt / (1.0 + rates[i, m] * dt)
+                _book(values, books, i, m, -share * values[i, m], volume[i])
+
+
+@compiled
+def reduce_carbon(values, rates, constants, hydrogen, volume, dt, books):
+    """Turn free CO2 into methane for one step at the rate of each layer [s-1]."""
+    for i in range(values.shape[0]):
+        if rates[i] > 0.0 and values[i, DIC] > 0.0:
+            co2, hydrogen[i] = free_co2(
+                values[i, DIC],
+                values[i, ALKALINITY],
+                constants[i, 0],
+                constants[i, 1],
+                constants[i, 2],
+                hydrogen[i],
+            )
+            x = rates[i] * dt / (1.0 + rates[i] * dt) * co2
+            _book(values, books, i, DIC, -x, volume[i])
+            _book(values, books, i, METHANE, x, volume[i])
 
 
 @compiled

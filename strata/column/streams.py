@@ -10,7 +10,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from strata.compiled import broadcast, compiled
 from strata.errors import ComputationError
@@ -148,7 +148,7 @@ def plunge(
     count = len(around.temperature)
     given, entrained = np.zeros(count), np.zeros(count)
 
-    def density(theta: float, salt: float, mass: float, space: float) -> Array:
+    def density(theta: ArrayLike, salt: ArrayLike, mass: ArrayLike, space: ArrayLike) -> Array:
         return np.asarray(
             broadcast(parcel_density)(
                 theta, salt, around.pressure, mass, space, around.haline_contraction

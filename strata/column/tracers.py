@@ -31,6 +31,8 @@ TRACERS = (
     "phosphate",
 )
 FIRST_TAG = len(TRACERS)
+#: The tag that is no share of the water but its age, in years since it entered or the start.
+AGE = "age"
 
 
 def names(tags: Sequence[str] = ()) -> tuple[str, ...]:

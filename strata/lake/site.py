@@ -121,16 +121,43 @@ class Reactions:
 
 
 @dataclass(frozen=True)
-class Mixing:
-    """How the column mixes."""
+class Conversion:
+    """Free CO2 turned into methane between two depths, first order."""
 
-    coefficient: float  # m2 s-2, a in K = a / N (Gargett 1984)
+    top: float  # m
+    foot: float  # m
+    rate: float  # s-1
+
+
+@dataclass(frozen=True)
+class WaterSource:
+    """One tracer given off or lost in the water between two depths."""
+
+    tracer: str  # a tracer name, or "heat"
+    top: float  # m
+    foot: float  # m
+    rate: float = 0.0  # mol m-3 s-1 (W m-3 for heat) given off
+    decay: float = 0.0  # s-1, share lost
+
+
+@dataclass(frozen=True)
+class Mixing:
+    """How the column mixes; the laws stand in ``strata.column.laws``."""
+
+    coefficient: float  # m2 s-2, a in K = a / N; 0 where another law is chosen
     least: float  # m2/s, bounds of the turbulent part
     most: float
     staircase_step: float  # m, H of the double-diffusive staircase; 0 switches it off
     wind_efficiency: float = 1.25  # of the wind's stirring (Kraus & Turner 1967)
     convection_efficiency: float = 0.2  # of the energy set free by cooling
     drag_coefficient: float = 1.3e-3
+    law: str = "gargett"  # or "hondzo-stefan", "given"
+    area_factor: float = 1.0  # times the published coefficient of that law
+    given_depth: Array | None = None  # m, of a given profile
+    given: Array | None = None  # m2/s, a given profile; one value: the same everywhere
+    bed_dissipation: float = 0.0  # W per m2 of bed, power that currents lose there
+    staircase_window: float = 0.0  # m, over which its gradients are told; 0: a pair of layers
+    plunge: float = 0.5  # m3 of surface water that a plunging river takes along per m3
     overshoot: float = 1.0  # times the laboratory's entrainment in overshoot (Baines 1975)
 
 
@@ -148,4 +175,6 @@ class Lake:
     reactions: Reactions
     mixing: Mixing
     layer_faces: Array  # m, faces of the layers from 0 to the deepest point
+    conversions: tuple[Conversion, ...] = ()
+    sources: tuple[WaterSource, ...] = ()
     texts: Mapping[str, str] = field(default_factory=dict)  # input file -> text

@@ -55,7 +55,12 @@ def report(text: str) -> None:
 
 def report_json(numbers: dict[str, Any]) -> None:
     """Print a result for a script, the caution included."""
-    click.echo(json.dumps(_plain(numbers | {"caution": CAUTION}), indent=2))
+    click.echo(json_text(numbers))
+
+
+def json_text(numbers: dict[str, Any]) -> str:
+    """Return numbers as JSON, the caution included."""
+    return json.dumps(_plain(numbers | {"caution": CAUTION}), indent=2)
 
 
 def _plain(value: Any) -> Any:

@@ -1,6 +1,7 @@
 """Tables of plants, for the terminal and the dossier: series, streams, figures, sweeps."""
 
 from collections.abc import Mapping
+from textwrap import fill
 
 import numpy as np
 import xarray as xr
@@ -11,7 +12,7 @@ from strata.plant.power import METHANE_WARMING
 from strata.plant.streams import NORMAL_PRESSURE
 from strata.report.blocks import Table
 from strata.report.plot import calendar_years, record_of
-from strata.report.tables import digits
+from strata.report.tables import aligned, digits
 from strata.variables import PLANT_SERIES
 
 BAR = 1e5
@@ -184,13 +185,17 @@ def figures(plant: str, account: Account) -> Table:
 # Sweeps -------------------------------------------------------------------------------------
 
 _SHOWN = (
-    ("recovery", "recovery [1]", 1.0, 3),
-    ("purity", "CH4 in the gas [1]", 1.0, 3),
-    ("specific_power", "used [kWh/m³ CH4]", _KWH_PER_M3, 3),
-    ("net_energy", "net [MJ/m³ feed]", 1e6, 2),
+    ("recovery", "recovered [1]", 1.0, 3),
+    ("purity", "purity [1]", 1.0, 3),
+    ("specific_power", "used [kWh/m³]", _KWH_PER_M3, 3),
+    ("net_energy", "net [MJ/m³]", 1e6, 2),
     ("return_density", "return [kg/m³]", 1.0, 2),
-    ("return_density_excess", "over the lake [kg/m³]", 1.0, 2),
+    ("return_density_excess", "excess [kg/m³]", 1.0, 2),
     ("return_ph", "pH", 1.0, 2),
+)
+_MEANING = (
+    "Purity is CH4 in the dry gas; used: energy per normal m³ of CH4; net: energy per m³ of "
+    "feed; return: density at the outlet, excess: over the lake there."
 )
 _HEADINGS = [heading for _, heading, _, _ in _SHOWN]
 
@@ -230,7 +235,7 @@ def by_pressure(sweep: xr.Dataset) -> list[Table]:
     return [
         Table(
             "One separator, CO2 left free and CO2 bound as calcite; the pressure of the best "
-            "net energy is among those shown.",
+            f"net energy is among those shown. {_MEANING}",
             ["case", "pressure [bar]", *_HEADINGS],
             rows,
         ),
@@ -323,3 +328,16 @@ def of_study(name: str, account: Account, sweeps: Mapping[str, xr.Dataset]) -> l
         tables.append(by_wash(sweeps["wash"]))
     tables += [by_lime(sweeps["lime"]), by_outlet(sweeps["outlets"])]
     return [figures(name, account), *streams(name, account), *tables]
+
+
+def text(table: Table) -> str:
+    """Return a table for the terminal; one whose last column gives reasons as paragraphs."""
+    caption = fill(table.caption, 95)
+    if table.headings[-1] != "why":
+        return f"{caption}\n\n{aligned(table.headings, table.rows, table.left)}"
+    lines = [
+        fill(f"{', '.join(words)}: {best} {table.headings[-2]}, {why}", 95,
+             subsequent_indent="    ")
+        for *words, best, why in table.rows
+    ]  # fmt: skip
+    return "\n".join([caption, "", *lines])

@@ -94,7 +94,8 @@ def _save_sweep(sweep: xr.Dataset, path: Path, title: str) -> None:
     and words may not bear the name of their dimension.
     """
     indexed = [str(name) for name in sweep.indexes]
-    plain = sweep.reset_index(indexed).rename_dims({name: f"{name}_number" for name in indexed})
+    numbered = {name: f"{name}_number" for name in indexed}
+    plain = sweep.reset_index(indexed).rename_dims(numbered)
     for name in indexed:
         plain[name].attrs.setdefault("long_name", name)
     program = f"strata {__version__}"

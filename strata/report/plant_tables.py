@@ -297,9 +297,9 @@ _OUTLETS = (
     ("trap_depth", "spreads at [m]", 1.0, 1),
     ("end_depth", "reaches [m]", 1.0, 1),
     ("dilution", "dilution [1]", 1.0, 1),
-    ("density_excess", "over the lake [kg/m³]", 1.0, 3),
-    ("port_speed", "in the ports [m/s]", 1.0, 2),
-    ("upper_reach", "ends above the outlet [1]", 1.0, 3),
+    ("density_excess", "excess [kg/m³]", 1.0, 3),
+    ("port_speed", "ports [m/s]", 1.0, 2),
+    ("upper_reach", "above it [1]", 1.0, 3),
 )
 
 
@@ -318,7 +318,11 @@ def by_outlet(sweep: xr.Dataset) -> Table:
         for variation in sweep["variation"].values
     ]
     headings = ["outlet", "variation", *(heading for _, heading, _, _ in _OUTLETS)]
-    return Table("Where the returned water goes today, and what moves it.", headings, rows, 2)
+    caption = (
+        "Where the returned water goes today, and what moves it: excess of density over the lake "
+        "at the outlet, speed in the ports, share that ends above the outlet."
+    )
+    return Table(caption, headings, rows, 2)
 
 
 def of_study(name: str, account: Account, sweeps: Mapping[str, xr.Dataset]) -> list[Table]:

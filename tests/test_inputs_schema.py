@@ -16,6 +16,8 @@ PAIRS = [
     (schema.RiverTable, site.River, {"dissolved"}),
     (schema.BedTable, site.BedSource, set()),
     (schema.ClimateTable, site.Climate, set()),
+    (schema.SourceTable, site.WaterSource, set()),
+    (schema.ConversionTable, site.Conversion, set()),
     (schema.ReactionsTable, site.Reactions, set()),
     (schema.MixingTable, site.Mixing, set()),
     (schema.StageTable, plan.Stage, set()),
@@ -50,7 +52,8 @@ def test_every_key_that_is_a_number_ends_in_a_unit_or_is_a_plain_number(
     table, target, otherwise
 ):
     plain = {"ports", "pipes", "stages", "towers", "compressor_stages", "share", "k_ij",
-             "wind_efficiency", "convection_efficiency", "drag_coefficient", "overshoot"}  # fmt: skip
+             "wind_efficiency", "convection_efficiency", "drag_coefficient", "overshoot",
+             "area_factor", "plunge_mixing"}  # fmt: skip
     for key, kind in keys(table).items():
         if "Between" in str(kind) and key not in plain:
             assert units.split(key)[1], key

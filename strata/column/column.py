@@ -451,7 +451,7 @@ class Column:
     def _river(self, river: River, row: Array, source: Source, around: Surroundings) -> Give:
         """Return a river as it enters now: over the lake, or under to its neutral level."""
         given, entrained = plunge(
-            source, around, self.seen.stability[1:-1], self.lake.mixing.plunge
+            source, around, self.seen.stability[1:-1], self.lake.mixing.plunge_mixing
         )
         return Give(kernel.RIVERS, river.flow, river.flow * row, given, entrained)
 

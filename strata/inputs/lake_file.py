@@ -12,6 +12,7 @@ from strata.errors import Fault, InputError, OutOfRangeError
 from strata.inputs import casts, checks, units
 from strata.inputs.climate_table import climate_faults, climate_of
 from strata.inputs.grid_table import grid_faults, with_chosen_layers
+from strata.inputs.mixing_table import mixing_faults, mixing_of
 from strata.inputs.schema import GridTable, LakeFile, WaterTable
 from strata.inputs.tables import Place, attributes, dotted, filled, show, validate
 from strata.inputs.texts import Texts
@@ -27,6 +28,8 @@ _NEEDED = (
     ("CH4",),
 )
 
+#: Arrays of tables that speak of an interval of depth.
+_WITH_INTERVAL = ("bed", "source", "conversion")
 #: Keys of the site that the gas laws know too.
 _IONS = ("magnesium_share", "calcium_share")
 
@@ -54,6 +57,11 @@ def build_lake(texts: Texts) -> site.Lake:
         for place, message in climate_faults(
             document.get("climate"), sound.get("climate", {}), latitude
         )
+    ]
+    faults += [Fault(file, place, message) for place, message in _rates(document, sound)]
+    faults += [
+        Fault(file, place, message)
+        for place, message in mixing_faults(document.get("mixing"), sound.get("mixing", {}))
     ]
     profiles, origins, more = _casts(sound, texts, floor)
     faults += more
@@ -157,12 +165,6 @@ def _cross_checks(sound: Mapping[str, Any], floor: float | None) -> Iterator[tup
             "site.calcium_share",
             f"is {shares[1]:g}; with magnesium_share at most 1 is allowed",
         )
-    mixing = sound.get("mixing", {})
-    if mixing.get("least_m2_s", 0.0) > mixing.get("most_m2_s", math.inf):
-        least, most = mixing["least_m2_s"], mixing["most_m2_s"]
-        yield "mixing.least_m2_s", f"is {least:g}; at most most_m2_s ({most:g}) is allowed"
-    for number, source in enumerate(sound.get("bed", [])):
-        yield from _bed_flux(dotted(sound, ("bed", number)), source)
     grid = sound.get("grid", {})
     yield from grid_faults(grid)
     if floor is not None and "layer_m" in grid and not grid.get("automatic", False):
@@ -202,8 +204,9 @@ def _below_floor(sound: Mapping[str, Any], floor: float) -> Iterator[tuple[str, 
         for key in ("depth_m", "spread_m")
     ]
     places += [
-        (("bed", number, key), item.get(key))
-        for number, item in enumerate(sound.get("bed", []))
+        ((array, number, key), item.get(key))
+        for array in _WITH_INTERVAL
+        for number, item in enumerate(sound.get(array, []))
         for key in ("top_m", "foot_m")
     ]
     places += [
@@ -225,7 +228,9 @@ def _intervals(sound: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
             place = dotted(sound, ("spring", number, "spread_m"))
             yield place, f"is {top:g} to {foot:g}; the first depth must be the smaller"
     tables: list[tuple[Place, Any]] = [
-        (("bed", number), item) for number, item in enumerate(sound.get("bed", []))
+        ((array, number), item)
+        for array in _WITH_INTERVAL
+        for number, item in enumerate(sound.get(array, []))
     ]
     zones = sound.get("grid", {}).get("zone", [])
     tables += [(("grid", "zone", number), item) for number, item in enumerate(zones)]
@@ -242,10 +247,18 @@ def _intervals(sound: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
             yield "grid.zone", f"overlaps itself: {top:g} m lies above {foot:g} m"
 
 
+def _rates(document: Mapping[str, Any], sound: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
+    """Find fluxes of the bed and sources in the water whose rate does not suit the tracer."""
+    for array, check in (("bed", _bed_flux), ("source", _source_rate)):
+        for number, source in enumerate(sound.get(array, [])):
+            # a rate that is itself faulty is there all the same
+            written = {**document[array][number], "tracer": source.get("tracer")}
+            if written["tracer"] is not None:
+                yield from check(dotted(sound, (array, number)), written)
+
+
 def _bed_flux(place: str, source: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
     """Find whether a bed source has the one flux that belongs to its tracer."""
-    if "tracer" not in source:
-        return
     right, wrong = "flux_mol_m2_yr", "flux_W_m2"
     if source["tracer"] == "heat":
         right, wrong = wrong, right
@@ -253,6 +266,20 @@ def _bed_flux(place: str, source: Mapping[str, Any]) -> Iterator[tuple[str, str]
         yield f"{place}.{wrong}", f"does not suit {show(source['tracer'])}; write {right}"
     elif right not in source:
         yield f"{place}.{right}", "is missing; a number is required"
+
+
+def _source_rate(place: str, source: Mapping[str, Any]) -> Iterator[tuple[str, str]]:
+    """Find whether a source in the water has the one rate that belongs to it."""
+    right, wrong = "rate_mol_m3_yr", "rate_W_m3"
+    if source["tracer"] == "heat":
+        right, wrong = wrong, right
+    given = [key for key in (right, "decay_per_yr") if key in source]
+    if wrong in source:
+        yield f"{place}.{wrong}", f"does not suit {show(source['tracer'])}; write {right}"
+    elif not given:
+        yield f"{place}.{right}", "is missing; give it, or decay_per_yr for a loss"
+    elif len(given) == 2:
+        yield f"{place}.decay_per_yr", f"stands beside {right}; give one in each table"
 
 
 def _zones(grid: Mapping[str, Any]) -> list[tuple[float, float, float]]:
@@ -382,7 +409,14 @@ def _assemble(
             site.BedSource(**attributes(source, site.BedSource)) for source in model.bed
         ),
         reactions=site.Reactions(**attributes(model.reactions, site.Reactions)),
-        mixing=site.Mixing(**attributes(model.mixing, site.Mixing)),
+        conversions=tuple(
+            site.Conversion(**attributes(change, site.Conversion))
+            for change in model.conversion
+        ),
+        sources=tuple(
+            site.WaterSource(**attributes(source, site.WaterSource)) for source in model.source
+        ),
+        mixing=mixing_of(model.mixing),
         layer_faces=layer_faces(float(depth[-1]), model.grid.layer_m, zones),
         texts=texts.known,
     )

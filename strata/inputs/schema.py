@@ -126,25 +126,38 @@ class RiverTable(WaterTable):
     flow_m3_s: Flow
 
 
+Carried = Literal[
+    "heat", "salinity", "DIC", "alkalinity", "calcium", "CH4", "N2", "O2", "H2S", "phosphate"
+]
+
+
 class BedTable(Table):
     """``[[bed]]``: a steady flux out of the bed between two depths."""
 
-    tracer: Literal[
-        "heat",
-        "salinity",
-        "DIC",
-        "alkalinity",
-        "calcium",
-        "CH4",
-        "N2",
-        "O2",
-        "H2S",
-        "phosphate",
-    ]
+    tracer: Carried
     top_m: Depth
     foot_m: Depth
     flux_W_m2: Annotated[float, Between(-10, 10)] | None = None
     flux_mol_m2_yr: Annotated[float, Between(-1000, 1000)] | None = None
+
+
+class SourceTable(Table):
+    """``[[source]]``: a tracer given off or lost in the water between two depths."""
+
+    tracer: Carried
+    top_m: Depth
+    foot_m: Depth
+    rate_mol_m3_yr: Annotated[float, Between(0, 1000)] | None = None
+    rate_W_m3: Annotated[float, Between(0, 10)] | None = None
+    decay_per_yr: Annotated[float, Between(0, 1000)] | None = None
+
+
+class ConversionTable(Table):
+    """``[[conversion]]``: free CO2 turned into methane between two depths."""
+
+    top_m: Depth
+    foot_m: Depth
+    rate_per_yr: Annotated[float, Between(0, 10)]
 
 
 class ReactionsTable(Table):
@@ -159,17 +172,29 @@ class ReactionsTable(Table):
 
 
 class MixingTable(Table):
-    """``[mixing]``: how the column mixes."""
+    """``[mixing]``: how the column mixes, by one of the laws of ``strata.column.laws``."""
 
-    coefficient_m2_s2: Annotated[
-        float, Between(1e-11, 1e-6, why="such lakes lie near 3e-9, the ocean at 1e-7")
-    ]
-    least_m2_s: Annotated[float, Between(0, 1e-4)]
-    most_m2_s: Annotated[float, Between(0, 1e-1, above=True)]
+    law: Literal["gargett", "hondzo-stefan", "given"] | None = None
+    coefficient_m2_s2: (
+        Annotated[
+            float, Between(1e-11, 1e-6, why="such lakes lie near 3e-9, the ocean at 1e-7")
+        ]
+        | None
+    ) = None
+    area_factor: Annotated[float, Between(1e-6, 100)] | None = None
+    given_depth_m: Annotated[list[Depth], Field(min_length=2)] | None = None
+    given_m2_s: (
+        Annotated[list[Annotated[float, Between(1e-12, 1e-1)]], Field(min_length=1)] | None
+    ) = None
+    least_m2_s: Annotated[float, Between(0, 1e-4)] | None = None
+    most_m2_s: Annotated[float, Between(0, 1e-1, above=True)] | None = None
+    bed_dissipation_mW_m2: Annotated[float, Between(0, 100)] | None = None
     staircase_step_m: Annotated[float, Between(0, 20, why="0 switches the staircase off")]
+    staircase_window_m: Annotated[float, Between(0, 200)] | None = None
     wind_efficiency: Annotated[float, Between(0, 10)] | None = None
     convection_efficiency: Share | None = None
     drag_coefficient: Annotated[float, Between(1e-4, 1e-2)] | None = None
+    plunge_mixing: Annotated[float, Between(0, 20)] | None = None
     overshoot: (
         Annotated[float, Between(0, 3, why="1 is the laboratory's entrainment")] | None
     ) = None
@@ -218,6 +243,8 @@ class LakeFile(Table):
     spring: list[SpringTable] = Field(default_factory=list)
     river: list[RiverTable] = Field(default_factory=list)
     bed: list[BedTable] = Field(default_factory=list)
+    source: list[SourceTable] = Field(default_factory=list)
+    conversion: list[ConversionTable] = Field(default_factory=list)
     reactions: ReactionsTable = Field(default_factory=ReactionsTable)
     mixing: MixingTable
     grid: GridTable

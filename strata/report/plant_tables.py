@@ -319,8 +319,8 @@ def by_outlet(sweep: xr.Dataset) -> Table:
     ]
     headings = ["outlet", "variation", *(heading for _, heading, _, _ in _OUTLETS)]
     caption = (
-        "Where the returned water goes today, and what moves it: excess of density over the lake "
-        "at the outlet, speed in the ports, share that ends above the outlet."
+        "Where the returned water goes today, and what moves it: excess of density over the "
+        "lake at the outlet, speed in the ports, share that ends above the outlet."
     )
     return Table(caption, headings, rows, 2)
 

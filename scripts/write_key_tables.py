@@ -1,20 +1,27 @@
-"""Write the tables of keys in docs/reference from the schema of the input files.
+"""Write the tables of docs/reference that the program itself knows: keys, options, functions.
 
 A table stands between two marks, such as ``<!-- keys: SpringTable -->`` and ``<!-- end -->``.
 What the schema knows (key, unit, what is allowed, default) is written anew; the last column,
 what a key means and where its default comes from, is written by hand in the page and kept.
-A new key appears with an empty last column, which the tests refuse.
+A new key appears with an empty last column, which the tests refuse.  Options of commands come
+with their help, functions with the first line of their docstring.
 
     python scripts/write_key_tables.py
 """
 
+import inspect
 import re
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import MISSING, fields
 from datetime import date
+from importlib import import_module
 from pathlib import Path
+from types import ModuleType
 from typing import Any, Literal, get_args, get_origin
 
+import click
+
+from strata.cli.group import group
 from strata.gas.laws import Laws
 from strata.inputs import casts, grid_table, schema, units
 from strata.inputs.tables import Between, Table, keys, plain_type
@@ -24,7 +31,7 @@ from strata.plant import plan
 
 PAGES = Path(__file__).parent.parent / "docs" / "reference"
 MARKED = re.compile(
-    r"(<!-- (?P<kind>\w+): (?P<name>\w+) -->\n)(?P<table>.*?)(<!-- end -->)", re.S
+    r"(<!-- (?P<kind>\w+): (?P<name>[\w.]+) -->\n)(?P<table>.*?)(<!-- end -->)", re.S
 )
 NOTHING = "–"
 
@@ -35,6 +42,8 @@ HOLDERS: Mapping[type[Table], type] = {
     schema.SpringTable: site.Spring,
     schema.RiverTable: site.River,
     schema.BedTable: site.BedSource,
+    schema.SourceTable: site.WaterSource,
+    schema.ConversionTable: site.Conversion,
     schema.ReactionsTable: site.Reactions,
     schema.MixingTable: site.Mixing,
     schema.LawsTable: Laws,
@@ -64,9 +73,8 @@ def allowed(kind: Any) -> str:
     plain, notes = plain_type(kind)
     between = next((note for note in notes if isinstance(note, Between)), None)
     if between is not None:
-        low = f"above {between.low:g}" if between.above else f"{between.low:g}"
         number = "whole number, " if plain is int else ""
-        return f"{number}{low} to {between.high:g}"
+        return number + _span(between.low, between.high, between.above)
     if get_origin(plain) is Literal:
         return ", ".join(f'`"{choice}"`' for choice in get_args(plain))
     if get_origin(plain) is list:
@@ -76,6 +84,13 @@ def allowed(kind: Any) -> str:
     if isinstance(plain, type) and issubclass(plain, Table):
         return "table"
     return {str: "text", bool: "true or false", float: "number", date: "date"}[plain]
+
+
+def _span(low: float | None, high: float | None, above: bool) -> str:
+    """Say what range a number lies in."""
+    if high is None:
+        return f"above {low:g}" if above else f"{low:g} or more"
+    return f"above {low:g}, up to {high:g}" if above else f"{low:g} to {high:g}"
 
 
 def _list(kind: Any, notes: tuple[Any, ...]) -> str:
@@ -164,10 +179,93 @@ def _quantities(_: str) -> tuple[list[str], Iterator[list[str]]]:
     return ["quantity", "unit", "usual bound", "against, unless said", "what it is"], rows
 
 
+# Options of commands ------------------------------------------------------------------------
+
+
+def _options(name: str) -> tuple[list[str], Iterator[list[str]]]:
+    """Return heading and rows of the options of a command, with the words of its help."""
+    command = group.get_command(click.Context(group), name)
+    assert command is not None, f"there is no command {name}"
+    rows = (
+        [
+            f"`{', '.join(option.opts)}`",
+            _value(option),
+            _option_default(option),
+            option.help or "",
+        ]
+        for option in command.params
+        if isinstance(option, click.Option)
+    )
+    return ["option", "value", "default", "what it does"], rows
+
+
+def _value(option: click.Option) -> str:
+    """Say what an option takes."""
+    kind = option.type
+    if option.is_flag:
+        return NOTHING
+    if isinstance(kind, click.FloatRange | click.IntRange):
+        return _span(kind.min, kind.max, kind.min_open)
+    if isinstance(kind, click.Choice):
+        return ", ".join(f"`{choice}`" for choice in kind.choices)
+    return {"path": "path", "text": "text", "integer": "whole number", "float": "number"}[
+        kind.name
+    ]
+
+
+def _option_default(option: click.Option) -> str:
+    """Say what holds where an option is left out."""
+    plain = option.default if isinstance(option.default, int | float | str) else None
+    return NOTHING if option.is_flag or plain is None else f"{plain}"
+
+
+# Functions ----------------------------------------------------------------------------------
+
+
+def _functions(name: str) -> tuple[list[str], Iterator[list[str]]]:
+    """Return heading and rows of the functions that a room gives to a notebook."""
+    room = import_module(name)
+    names = getattr(room, "__all__", None) or _of_its_own(room)
+    rows = (
+        [
+            f"`{name}.{one}{_signature(function)}`",
+            (inspect.getdoc(function) or "").split("\n")[0],
+        ]
+        for one in names
+        if inspect.isfunction(function := getattr(room, one))
+    )
+    return ["function", "what it does"], (
+        [call, re.sub(r":\w+:`(\w+)`", r"`\1`", words)] for call, words in rows
+    )
+
+
+def _of_its_own(room: ModuleType) -> list[str]:
+    """Return the public functions that a module defines; of figures, those that draw."""
+    own = [
+        name
+        for name, one in vars(room).items()
+        if inspect.isfunction(one) and one.__module__ == room.__name__ and name[0] != "_"
+    ]
+    draw = [name for name in own if "ax" in inspect.signature(getattr(room, name)).parameters]
+    return draw or own
+
+
+def _signature(function: Callable[..., Any]) -> str:
+    """Return the parameters of a function without their types."""
+    whole = inspect.signature(function)
+    bare = [p.replace(annotation=p.empty) for p in whole.parameters.values()]
+    return str(whole.replace(parameters=bare, return_annotation=whole.empty))
+
+
+# Pages --------------------------------------------------------------------------------------
+
+
 KINDS: Mapping[str, Callable[[str], tuple[list[str], Iterator[list[str]]]]] = {
     "keys": _keys,
     "columns": _headings,
     "quantities": _quantities,
+    "options": _options,
+    "functions": _functions,
 }
 
 
@@ -184,7 +282,8 @@ def rewritten(page: str) -> str:
         heading, rows = KINDS[found["kind"]](found["name"])
         words = meanings(found["table"])
         lines = [heading, ["---"] * len(heading)]
-        lines += [[*row, words.get(row[0], "")] for row in rows]
+        for row in rows:
+            lines.append(row if len(row) == len(heading) else [*row, words.get(row[0], "")])
         text = "".join(f"| {' | '.join(line)} |\n" for line in lines)
         return f"{found[1]}{text}{found[5]}"
 

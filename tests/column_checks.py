@@ -62,11 +62,28 @@ def column_of(lake, salinity, temperature=20.0, **more):
     return Column(lake, values)
 
 
-def run(column, seconds, dt, weather=CALM, visits=20):
+class _NoAir:
+    """Air that no gas goes into or comes from."""
+
+    @staticmethod
+    def exchange(wind_speed, surface, width):
+        """Return that nothing is exchanged."""
+        return np.zeros((width, 2))
+
+
+def seal(column):
+    """Let no gas pass the surface of a column."""
+    column._air = _NoAir()
+
+
+def run(column, seconds, dt, weather=CALM, visits=20, molecules=True):
     """Carry a column on, refreshing what is held a number of times."""
     steps = max(1, round(seconds / visits / dt))
     for _ in range(visits):
         column.refresh()
+        if not molecules:
+            still = np.zeros_like(column.slow.molecular)
+            column.slow = replace(column.slow, molecular=still)
         gives = column.natural(column.surroundings())
         column.advance(weather, [], gives, steps, seconds / visits / steps)
 
@@ -135,7 +152,7 @@ def two_springs(layers, dt_days):
         salinity=np.linspace(3.0, 5.0, layers),
         phosphate=0.6,
     )
-    whole = diffusivity + column.molecular[0, PHOSPHATE]
+    whole = diffusivity + column.slow.molecular[0, PHOSPHATE]
     length = whole / (flow / AREA)
     top, foot = faces[:-1] - at, faces[1:] - at
     below = np.where(
@@ -185,7 +202,8 @@ def breathing_box(dt_days):
     column = column_of(plain_lake(faces), salinity=0.0, O2=0.0)
     column.state.mixed_depth[0] = floor
     storm = Weather(20.0, 0.0, 10.0, 0.0, 0.0)
-    rate, balance = column._exchange(storm.wind_speed)[OXYGEN]
+    exchange = column._air.exchange(storm.wind_speed, column.values[0], 12)
+    rate, balance = exchange[OXYGEN]
     time = np.arange(1, 6) * 10 * DAY
     found = []
     for _ in time:
@@ -218,7 +236,9 @@ def bed_heat(layers):
     firm = Weather(20.0, 1e7, 0.0, 0.0, 0.0)  # the surface is held at 20 degC
     run(column, 12 * floor**2 / diffusivity / 2.467, DAY, firm, visits=60)
     slope = flux / (REFERENCE_DENSITY * REFERENCE_HEAT_CAPACITY)
-    slope /= diffusivity + column.heat.mean()  # molecular: 0.7 % of the whole, even to 1 %
+    slope /= (
+        diffusivity + column.slow.molecular[:, TEMPERATURE].mean()
+    )  # molecular: 0.7 % of the whole, even to 1 %
     points = (np.arange(200) + 0.5) / 200
     z = faces[:-1, None] + points * np.diff(faces)[:, None]
     weight = PchipInterpolator(lake.hypsography.depth, lake.hypsography.area)(z)
@@ -256,9 +276,8 @@ def filling(layers, years=10.0):
     seep = Spring("seep", 60.0, flow, 20.0, 1.0 + 0.03 * foot, dissolved, spread=(top, foot))
     lake = plain_lake(faces, diffusivity=1e-14, springs=(seep,))
     column = _tagged(lake, 1.0 + 0.03 * depth)
-    column._molecular = lambda in_situ: np.zeros((layers + 1, len(column.tracers)))
     time = years * YEAR
-    run(column, time, 5 * DAY, visits=20)
+    run(column, time, 5 * DAY, visits=20, molecules=False)
     speed = flow / AREA
     points = (np.arange(50) + 0.5) / 50
     z = faces[:-1, None] + points * np.diff(faces)[:, None]
@@ -283,9 +302,8 @@ def lifting(layers=200, years=5.0):
     gentle = Spring("neutral", at, flow, 20.0, salinity(at), dissolved, ports=400)
     lake = plain_lake(faces, diffusivity=1e-14, springs=(gentle,))
     column = _tagged(lake, salinity(depth))
-    column._molecular = lambda in_situ: np.zeros((layers + 1, len(column.tracers)))
     time = years * YEAR
-    run(column, time, DAY, visits=round(12 * years))
+    run(column, time, DAY, visits=round(12 * years), molecules=False)
     rise = flow / AREA * time
     # within 4 m of the outlet the plume takes in and gives back; at the surface the profile
     # ends and, with nothing to smooth it, sends a saw-tooth of some layers down
@@ -337,7 +355,7 @@ def closed_column(steps):
     rng = np.random.default_rng(5)
     more = {name: rng.uniform(0.1, 5.0, len(depth)) for name in TRACERS[4:]}
     column = column_of(lake, 1.0 + 0.02 * depth, 20.0 + 0.02 * depth, **more)
-    column._exchange = lambda wind: np.zeros((len(TRACERS), 2))  # no gas passes the surface
+    seal(column)
     before = column.inventory()
     gusts = (0.0, 4.0, 9.0, 2.0)
     visits = 12

@@ -114,7 +114,7 @@ def by_lines(layers, years, diffusivity):
 def against_lines(layers, years=30.0, dt_days=2.0, diffusivity=2e-7):
     """Return the column beside the solution by lines, and the part of its own layers."""
     column, _ = bowl_with_springs(layers, years, dt_days, diffusivity)
-    whole = diffusivity + column.molecular[0, PHOSPHATE]
+    whole = diffusivity + column.slow.molecular[0, PHOSPHATE]
     fine = 8 * layers
     _, values, volume = by_lines(fine, years, whole)
     content = (values * volume).reshape(layers, 8).sum(axis=1)
@@ -141,7 +141,7 @@ def moving_front(layers, years, diffusivity):
         return 0.5 * (1 + np.tanh((z - at) / 2.0))
 
     column.values[:, PHOSPHATE] = means_of(front, column.basin)
-    whole = diffusivity + column.molecular[0, PHOSPHATE]
+    whole = diffusivity + column.slow.molecular[0, PHOSPHATE]
     run(column, years * YEAR, DAY, visits=20)
     found = column.values[:, PHOSPHATE]
     exact = _layers_that_move(front, flow, whole, years * YEAR, column.basin)

@@ -66,7 +66,8 @@ def test_double_diffusion_acts_only_where_the_law_holds():
 
 
 def test_turbulent_diffusivity_is_a_over_n_within_its_bounds():
-    assert turbulent_diffusivity(1e-4, 2.8e-9, 0.0, 0.5, 1e-12, 1e-6) == pytest.approx(2.8e-7, rel=1e-12)
+    within = turbulent_diffusivity(1e-4, 2.8e-9, 0.0, 0.5, 1e-12, 1e-6)
+    assert within == pytest.approx(2.8e-7, rel=1e-12)
     assert turbulent_diffusivity(1e-4, 2.8e-9, 0.0, 0.5, 1e-6, 1e-5) == 1e-6
     assert turbulent_diffusivity(0.0, 2.8e-9, 0.0, 0.5, 1e-9, 1e-6) == 1e-6
     assert turbulent_diffusivity(-1e-9, 2.8e-9, 0.0, 0.5, 1e-9, 1e-6) == 1e-6

@@ -73,8 +73,9 @@ def carry_on(
     """Carry column and plants through one span, solving plants again as their feed changes."""
     steps, dt = span.steps(step_days)
     air = weather(column.lake.climate, span.begin, begin, seed)
+    january = span.begin.month == 1
     while steps:
-        column.refresh()
+        column.refresh(slow=january)
         around = column.surroundings()
         working = fleet.work(column, around, span.begin)
         gives = column.natural(around) + working.gives

@@ -160,6 +160,7 @@ def test_months_are_calendar_months_and_years_are_whole():
     assert clock.add_years(date(2028, 2, 29), 1) == date(2029, 3, 1)
 
 
+@pytest.mark.long
 def test_a_run_of_five_centuries_closes_its_books(lake):
     result = strata.project(lake, years=500, step_days=31)
     assert str(result["time"].values[-1])[:4] == "2527"

@@ -5,15 +5,15 @@ refreshes what is held between visits of the clock, and words what the loop coul
 """
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import fields
 
 import numpy as np
 from numpy.typing import NDArray
 
-from strata import ranges
 from strata.column import kernel
+from strata.column.air import air_table
 from strata.column.laws import bed_coefficient, law_of, staircase_window
-from strata.column.mixing import staircase_drive
+from strata.column.slow import SlowProperties, slow_properties
 from strata.column.streams import (
     Give,
     Source,
@@ -24,37 +24,25 @@ from strata.column.streams import (
     stack,
 )
 from strata.column.supply import supply_of
-from strata.column.surface import air_exchange, wind_power
+from strata.column.surface import wind_power
 from strata.column.tracers import (
-    DIC,
-    METHANE,
-    NITROGEN,
-    OXYGEN,
     SALINITY,
-    SULFIDE,
     TEMPERATURE,
     index,
     names,
 )
 from strata.column.transport import face_weights
 from strata.compiled import broadcast
-from strata.constants import DRY_AIR
 from strata.errors import ComputationError
-from strata.gas.diffusivity import gas_diffusivity
-from strata.gas.laws import Laws
-from strata.gas.table import gas_table
 from strata.lake.basin import Basin, build_basin
 from strata.lake.climate import Weather
 from strata.lake.site import Lake, River, Spring
 from strata.species import SPECIES
 from strata.water.density import (
-    in_situ_temperature,
     parcel_density,
     potential_temperature,
-    thermal_expansion,
 )
 from strata.water.stability import mixed_layer_depth, standard_gravity
-from strata.water.transport import kinematic_viscosity, salt_diffusion, thermal_diffusivity
 
 Array = NDArray[np.float64]
 
@@ -68,32 +56,6 @@ LEDGER_TOLERANCE = 1e-10
 GASES = ("CO2", "CH4", "N2", "O2", "H2S")
 #: Tracers are laid out in groups of this many.
 LANES = 4
-#: Free gases that cross the surface, by tracer column.
-AT_SURFACE = {DIC: "CO2", METHANE: "CH4", NITROGEN: "N2", OXYGEN: "O2", SULFIDE: "H2S"}
-
-
-@dataclass(frozen=True)
-class _AirTable:
-    """Gases at the surface, in the order of ``AT_SURFACE``, as compiled code wants them."""
-
-    rows: Array
-    laws: Array
-    shares: Array  # mole fractions of dry air
-    schmidt: Array
-    diffusion: Array
-
-    @classmethod
-    def of(cls, lake: Lake) -> "_AirTable":
-        """Return the table for a lake's laws."""
-        gases = list(AT_SURFACE.values())
-        table = gas_table(gases, Laws.of(lake.site.laws))
-        return cls(
-            rows=table.rows,
-            laws=table.laws,
-            shares=np.array([DRY_AIR.get(gas, 0.0) for gas in gases]),
-            schmidt=np.array([SPECIES[gas].schmidt or (0.0,) * 4 for gas in gases]),
-            diffusion=np.array([SPECIES[gas].diffusivity for gas in gases]),
-        )
 
 
 class Column:
@@ -138,7 +100,8 @@ class Column:
         self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
         self._springs = [self._spring_source(spring) for spring in lake.springs]
         self._rivers = [self._river_source(river) for river in lake.rivers]
-        self._air = _AirTable.of(lake)
+        self._air = air_table(lake.site)
+        self.slow: SlowProperties
         self.refresh()
 
     @property
@@ -170,14 +133,16 @@ class Column:
             "mixed_depth": state.mixed_depth,
             "books": state.books,
             "start": self.start,
+            **{f"slow_{name}": held for name, held in vars(self.slow).items()},
         }
 
     def from_arrays(self, arrays: Mapping[str, Array]) -> None:
-        """Take up what :meth:`to_arrays` gave."""
+        """Take up what :meth:`to_arrays` gave; the rest follows at the next refresh."""
         for name in ("values", "hydrogen", "mixed_depth", "books"):
             getattr(self.state, name)[...] = arrays[name]
         self.start = arrays["start"]
-        self.refresh()
+        held = {field.name: arrays[f"slow_{field.name}"] for field in fields(SlowProperties)}
+        self.slow = SlowProperties(**held)
 
     def check_ledger(self) -> None:
         """Refuse to go on if the books of any tracer do not close.
@@ -295,8 +260,8 @@ class Column:
         """Return the reference heat capacity per volume [J m-3 K-1]."""
         return REFERENCE_DENSITY * REFERENCE_HEAT_CAPACITY
 
-    def refresh(self) -> None:
-        """Work out again what is held between visits of the clock."""
+    def refresh(self, slow: bool = True) -> None:
+        """Work out what is held between visits of the clock, with the slow part if asked."""
         values = self.state.values
         if not np.isfinite(values).all():
             layer, tracer = np.argwhere(~np.isfinite(values))[0]
@@ -313,21 +278,14 @@ class Column:
             grid.physics,
             self.seen.stability,
         )
-        face_theta = np.empty(self.basin.layers + 1)
-        face_theta[1:-1] = 0.5 * (values[1:, TEMPERATURE] + values[:-1, TEMPERATURE])
-        face_theta[0], face_theta[-1] = values[0, TEMPERATURE], values[-1, TEMPERATURE]
-        in_situ = broadcast(in_situ_temperature)(face_theta, self.face_pressure)
-        salinity = np.interp(self.basin.faces, self.basin.depth, values[:, SALINITY])
-        self.expansion = thermal_expansion(in_situ, salinity, self.face_pressure)
-        self.heat = thermal_diffusivity(in_situ)
-        self.drive = broadcast(staircase_drive)(
-            self.expansion,
-            self.gravity,
-            self.heat,
-            kinematic_viscosity(in_situ),
-            self.lake.mixing.staircase_step,
-        )
-        self.molecular = self._molecular(in_situ)
+        if slow:
+            self.slow = slow_properties(
+                values,
+                self.free_co2(),
+                self.face_pressure,
+                self.gravity,
+                self.lake.mixing.staircase_step,
+            )
 
     def _not_a_number(self, layer: int, tracer: int) -> ComputationError:
         """Return the error for a value that is no longer a number."""
@@ -335,22 +293,6 @@ class Column:
         return ComputationError(
             f"{self.tracers[tracer]} at {depth:.1f} m is no longer a number"
         )
-
-    def _molecular(self, in_situ: Array) -> Array:
-        """Return the molecular diffusivity of each tracer at the faces [m2 s-1].
-
-        DIC moves as free CO2 and bicarbonate, by their shares; ions, phosphate and tags as
-        salt.
-        """
-        salt = salt_diffusion(in_situ)
-        molecular = np.repeat(salt[:, None], self.state.values.shape[1], axis=1)
-        molecular[:, TEMPERATURE] = self.heat
-        for column, gas in AT_SURFACE.items():
-            molecular[:, column] = gas_diffusivity(gas, in_situ)
-        co2 = self.free_co2() / np.maximum(self.values[:, DIC], 1e-30)
-        share = np.concatenate([co2[:1], 0.5 * (co2[1:] + co2[:-1]), co2[-1:]])
-        molecular[:, DIC] = share * molecular[:, DIC] + (1.0 - share) * salt
-        return molecular
 
     def free_co2(self) -> Array:
         """Return free CO2 of the layers [mol m-3]."""
@@ -461,35 +403,6 @@ class Column:
             self._river(*river, around) for river in self._rivers
         ]
 
-    def _exchange(self, wind_speed: float) -> Array:
-        """Return transfer velocity [m s-1] and equilibrium with air, per tracer."""
-        temperature = float(
-            ranges.within(
-                "surface temperature",
-                self.values[0, TEMPERATURE],
-                (0.0, 30.0),
-                "degC",
-                "Schmidt numbers of Wanninkhof 1992",
-            )
-        )
-        air = self._air
-        found = np.empty((len(AT_SURFACE), 2))
-        air_exchange(
-            wind_speed,
-            temperature,
-            self.values[0, SALINITY],
-            self.lake.site.air_pressure,
-            air.rows,
-            air.laws,
-            air.shares,
-            air.schmidt,
-            air.diffusion,
-            found,
-        )
-        exchange = np.zeros((self.state.values.shape[1], 2))
-        exchange[list(AT_SURFACE)] = found
-        return exchange
-
     def advance(
         self,
         weather: Weather,
@@ -535,9 +448,7 @@ class Column:
         mixing = self.lake.mixing
         held = kernel.Held(
             constants=self.constants,
-            molecular=self.molecular,
-            expansion=self.expansion,
-            drive=self.drive,
+            **vars(self.slow),
             air=np.array(
                 [
                     weather.equilibrium_temperature,
@@ -552,7 +463,7 @@ class Column:
                     weather.evaporation,
                 ]
             ),
-            exchange=self._exchange(weather.wind_speed),
+            exchange=self._air.exchange(weather.wind_speed, self.values[0], width),
             reference=watched,
             from_bed=self._supply.bed_total,
             from_sources=self._supply.source_total,

@@ -40,7 +40,8 @@ def add_years(day: date, years: float) -> date:
 
 def month_starts(begin: date, end: date) -> list[date]:
     """Return the first days of the months after ``begin`` up to ``end``."""
-    days, year, month = [], begin.year, begin.month
+    days: list[date] = []
+    year, month = begin.year, begin.month
     while True:
         year, month = (year + 1, 1) if month == 12 else (year, month + 1)
         day = date(year, month, 1)

@@ -160,6 +160,28 @@ class VerdictRow:
 
 
 @dataclass(frozen=True)
+class StepChange:
+    """One quantity of a verdict at its worst, with the step and with half of it.
+
+    Parameters
+    ----------
+    quantity, words, unit : str
+        As in :data:`QUANTITIES`.
+    value, halved : float
+        The worst over the run.
+    change : float
+        Largest difference at any time, in the unit of the quantity.
+    """
+
+    quantity: str
+    words: str
+    unit: str
+    value: float
+    halved: float
+    change: float
+
+
+@dataclass(frozen=True)
 class Verdict:
     """How a projection fared under a set of limits."""
 

@@ -6,9 +6,16 @@ import numpy as np
 import xarray as xr
 
 from strata.gradients import Gradient, StabilityProfiles
-from strata.limits import BREACHED, KEPT, MILLION, UNCERTAIN, Verdict, VerdictRow
+from strata.limits import (
+    BREACHED,
+    KEPT,
+    MILLION,
+    UNCERTAIN,
+    StepChange,
+    Verdict,
+    VerdictRow,
+)
 from strata.margins import cubic_kilometres, lifting_energy, tonnes
-from strata.studies.step import StepChange
 
 BAR = 1e5
 

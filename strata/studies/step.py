@@ -1,37 +1,14 @@
 """Does the step matter? The same run with its step halved, by everything a verdict uses."""
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 import numpy as np
 import xarray as xr
 
 from strata.lake.site import Lake
-from strata.limits import QUANTITIES, Limit, series
+from strata.limits import QUANTITIES, Limit, StepChange, series
 from strata.plant.plan import Plan
 from strata.studies import pool
-
-
-@dataclass(frozen=True)
-class StepChange:
-    """One quantity of a verdict at its worst, with the step and with half of it.
-
-    Parameters
-    ----------
-    quantity, words, unit : str
-        As in :data:`strata.limits.QUANTITIES`.
-    value, halved : float
-        The worst over the run.
-    change : float
-        Largest difference at any time, in the unit of the quantity.
-    """
-
-    quantity: str
-    words: str
-    unit: str
-    value: float
-    halved: float
-    change: float
 
 
 def check_step(

@@ -15,6 +15,7 @@ from strata import clock, results
 from strata.column import kernel
 from strata.column.column import Column
 from strata.column.start import first_day
+from strata.column.tracers import followed
 from strata.coupling import SERIES, Fleet
 from strata.errors import ComputationError, OutOfRangeError
 from strata.fingerprint import canonical_hash
@@ -111,7 +112,8 @@ def project(
     seed : int
         Of the year-to-year variability of the climate, where the lake has any.
     tags : sequence of str
-        ``"spring_<name>"`` to follow the water of a spring.
+        Names of springs and rivers whose water is followed, and ``"age"`` for the years
+        since water entered (or since the start).
     values : ndarray, shape (n, 10), optional
         Start from these tracers instead of the casts.
     checkpoint : path, optional
@@ -128,7 +130,7 @@ def project(
     Raises
     ------
     strata.OutOfRangeError
-        If years or step are out of range.
+        If years or step are out of range, or nothing of a name enters the lake.
     strata.InputError
         If the checkpoint is of another run, or cannot be written.
     strata.ComputationError
@@ -140,7 +142,7 @@ def project(
             f" up to {LONGEST:g} years in steps of up to 31 days are allowed"
         )
     fleet = Fleet(plan, lake)
-    column = _column(lake, values, (*fleet.tags, *tags))
+    column = _column(lake, values, (*fleet.tags, *followed(lake, tags)))
     begin = lake.site.start
     end = clock.add_years(begin, years)
     todo = clock.spans(begin, end, fleet.dates(begin, end))

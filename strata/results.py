@@ -35,6 +35,8 @@ NO_PLAN = "lake left alone"
 #: In a file words may not bear the name of their dimension, as coordinates of a dataset do.
 _LABELS = {name: f"{name}_name" for name in ("zone", "tracer", "ledger_term", "plant")}
 
+#: The one tag that is no share.
+_AGE = Variable(("time", "depth"), "365.25 d", "time since the water entered, or the start")
 #: Variable of the dataset for each tracer of the state; tags become ``tag_<name>``.
 _OF_TRACER = {
     "temperature": "potential_temperature",
@@ -140,7 +142,9 @@ def dataset(record: Record, lake: Lake, plan: Plan | None = None) -> xr.Dataset:
         if name in VARIABLES
     }
     for name in record.tracers:
-        if name not in _OF_TRACER:
+        if name == "age":
+            table[name] = (_AGE.dims, record.of(name), _AGE.attributes)
+        elif name not in _OF_TRACER:
             words = Variable(("time", "depth"), "1", f"share of water from {name}")
             table[f"tag_{_identifier(name)}"] = (words.dims, record.of(name), words.attributes)
     table |= _plant_table(record)

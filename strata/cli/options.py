@@ -26,6 +26,19 @@ step_days = click.option(
     show_default=True,
     help="Length of a step of the column; 5 is enough for a survey.",
 )
+seed = click.option(
+    "--seed",
+    type=click.IntRange(0, 2**63 - 1),
+    default=0,
+    show_default=True,
+    help="Which years to draw, where the climate varies from year to year.",
+)
+follow = click.option(
+    "--follow",
+    multiple=True,
+    metavar="NAME",
+    help="Follow the water of a spring or river, or its age (age); may be given again.",
+)
 checkpoint = click.option(
     "--checkpoint",
     type=_FILE,

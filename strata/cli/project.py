@@ -13,6 +13,8 @@ from strata.cli import BREACHED, options
 @click.option("-o", "--out", type=click.Path(path_type=Path), help="NetCDF file to write.")
 @options.years
 @options.step_days
+@options.seed
+@options.follow
 @options.check_step
 @options.checkpoint
 @options.limits
@@ -26,6 +28,8 @@ def command(
     out: Path | None,
     years: float,
     step_days: float,
+    seed: int,
+    follow: tuple[str, ...],
     check_step: bool,
     checkpoint: Path | None,
     limits: Path | None,
@@ -44,6 +48,7 @@ def command(
     from strata import results
     from strata.cli import numbers, output, terminal
     from strata.inputs import load_all
+    from strata.projection import followed
     from strata.report import tables
     from strata.studies import step
     from strata.studies.compare import compare
@@ -76,6 +81,8 @@ def command(
             years=years,
             step_days=step_days,
             alone=not plans,
+            seed=seed,
+            tags=followed(site, follow),
             checkpoint=checkpoint,
             progress=progress,
         )

@@ -42,6 +42,8 @@ def compare(
     *,
     years: float = 50.0,
     step_days: float = 1.0,
+    seed: int = 0,
+    tags: Sequence[str] = (),
     alone: bool = True,
     checkpoint: Path | None = None,
     progress: Callable[[float], None] | None = None,
@@ -55,7 +57,7 @@ def compare(
     plans : sequence of Plan
         Their names must differ.
     limits : Limits, optional
-    years, step_days : float
+    years, step_days, seed, tags
         As in :func:`strata.project`.
     alone : bool
         Whether the lake left alone is projected too; limits need it.
@@ -75,7 +77,7 @@ def compare(
     names = [plan.name if plan else NO_PLAN for plan in cases]
     if len(set(names)) < len(names):
         raise StrataError("the plans of a comparison must bear different names")
-    common = {"years": years, "step_days": step_days}
+    common = {"years": years, "step_days": step_days, "seed": seed, "tags": tags}
     jobs = [pool.projection(lake, plan, **common) for plan in cases[:-1]]
     jobs.append(pool.projection(lake, cases[-1], **common, checkpoint=checkpoint))
     results = dict(zip(names, pool.run(jobs, progress, workers), strict=True))

@@ -5,6 +5,7 @@ all else the amount added.  The kernel withdraws the actual water and applies th
 so what is produced is exactly what was withdrawn and added less what was returned.
 """
 
+import re
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date
@@ -31,6 +32,9 @@ Array = NDArray[np.float64]
 RETURN_TAG = "return_water"
 #: Tracers of which a share goes back; of the others an amount is added.
 _BY_SHARE = ("DIC", "CH4", "N2", "O2", "H2S")
+
+
+_NUMBER = re.compile(r"\d+(\.\d+)?")
 
 
 @dataclass(frozen=True)
@@ -67,7 +71,7 @@ class Fleet:
             plant.name: {"recovered_CH4": 0.0, "vented_CH4_total": 0.0}
             for plant in self.plants
         }
-        self.warnings: list[str] = []
+        self._told: dict[str, str] = {}  # a warning without its numbers -> as first given
 
     def dates(self, begin: date, end: date) -> list[date]:
         """Return every day between two on which a plant changes load or settings."""
@@ -99,7 +103,7 @@ class Fleet:
             takes += draws
             gives += running.gives
             self.running.append(running)
-            self._warn(plant.name, operation.warnings)
+            self._warn(plant.name, day, operation.warnings)
         reference = [draw @ column.values / draw.sum() for draw in takes]
         return Working(
             takes, gives, np.array(reference).reshape(len(takes), len(column.tracers))
@@ -137,12 +141,16 @@ class Fleet:
             running.paths.append(path)
             running.excess.append(excess_density(source, around))
 
-    def _warn(self, name: str, warnings: Sequence[str]) -> None:
-        """Keep each warning of a plant once."""
+    def _warn(self, name: str, day: date, warnings: Sequence[str]) -> None:
+        """Keep each kind of warning of a plant once, with the numbers of its first day."""
         for warning in warnings:
-            line = f"{name}: {warning}"
-            if line not in self.warnings:
-                self.warnings.append(line)
+            kind = f"{name}: {_NUMBER.sub('', warning)}"
+            self._told.setdefault(kind, f"{name}, from {day}: {warning}")
+
+    @property
+    def warnings(self) -> tuple[str, ...]:
+        """Return what the plants warned of, in the order of its first day."""
+        return tuple(self._told.values())
 
     def book(self, column: Column, seconds: float) -> None:
         """Add the methane that left the lake during a visit to the totals of each plant."""
@@ -165,14 +173,14 @@ class Fleet:
         """Return the totals of every plant."""
         return {
             "totals": np.array([list(totals.values()) for totals in self.totals.values()]),
-            "warnings": np.array(self.warnings, dtype=np.str_),
+            "warnings": np.array([*self._told.items()], dtype=np.str_).reshape(-1, 2),
         }
 
     def from_arrays(self, arrays: Mapping[str, Array]) -> None:
         """Take up what :meth:`to_arrays` gave."""
         for totals, row in zip(self.totals.values(), arrays["totals"], strict=True):
             totals.update(zip(totals, row.tolist(), strict=True))
-        self.warnings = [str(line) for line in arrays["warnings"]]
+        self._told = {str(kind): str(line) for kind, line in arrays["warnings"]}
 
     def series(self) -> Array:
         """Return what every plant does now, (plants, SERIES)."""

@@ -34,6 +34,8 @@ MARKED = re.compile(
     r"(<!-- (?P<kind>\w+): (?P<name>[\w.]+) -->\n)(?P<table>.*?)(<!-- end -->)", re.S
 )
 NOTHING = "–"
+#: An upper bound beyond this is one of the machine's, and not worth a word.
+MOST_SHOWN = 1e15
 
 #: Table of a file -> the frozen object that holds its defaults.
 HOLDERS: Mapping[type[Table], type] = {
@@ -88,7 +90,7 @@ def allowed(kind: Any) -> str:
 
 def _span(low: float | None, high: float | None, above: bool) -> str:
     """Say what range a number lies in."""
-    if high is None:
+    if high is None or high > MOST_SHOWN:
         return f"above {low:g}" if above else f"{low:g} or more"
     return f"above {low:g}, up to {high:g}" if above else f"{low:g} to {high:g}"
 

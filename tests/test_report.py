@@ -345,7 +345,7 @@ def test_the_page_lists_inputs_ledger_and_command(page, runs, limits):
 def test_streams_are_tabled_and_empty_ones_left_out(page, account):
     text = page[page.index("streams of water with today") :]
     feed, *_, product, vent = account.streams()
-    assert f">pH</th><td>1</td><td class=\"n\">{feed['pH']:.2f}</td>" in text
+    assert f'>pH</th><td>1</td><td class="n">{feed["pH"]:.2f}</td>' in text
     cells = re.search(r">CH4</th><td>1</td>(.*?)</tr>", text)
     assert f">{product['CH4_share']:.4f}<" in cells[1]
     assert vent["flow_mol_s"] == 0.0

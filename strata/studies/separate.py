@@ -74,8 +74,19 @@ class Setting:
     around: Surroundings
 
 
-def setting_of(lake: Lake, plan: Plan, plant: str | None = None) -> Setting:
+def column_today(lake: Lake) -> Column:
+    """Return the column of a lake as its casts stand."""
+    column = Column(lake, first_day(lake))
+    column.refresh()
+    return column
+
+
+def setting_of(
+    lake: Lake, plan: Plan, plant: str | None = None, column: Column | None = None
+) -> Setting:
     """Return a plant of a plan (the first, or by name) with the water that it draws today.
+
+    A column of :func:`column_today` may be given, to serve several plants.
 
     Raises
     ------
@@ -84,19 +95,18 @@ def setting_of(lake: Lake, plan: Plan, plant: str | None = None) -> Setting:
     """
     by_name = {one.name: one for one in plan.plants}
     chosen = ranges.named("plant", plant, by_name) if plant else plan.plants[0]
-    column = Column(lake, first_day(lake))
-    column.refresh()
+    now = column or column_today(lake)
 
     def drawn(intakes: Sequence[Intake], flow: float) -> WaterStream:
-        weights = plant_weights(column.basin.faces, column.seen.stability[1:-1], intakes, flow)
-        return stream_of(flow * weights, column)
+        weights = plant_weights(now.basin.faces, now.seen.stability[1:-1], intakes, flow)
+        return stream_of(flow * weights, now)
 
     wash = chosen.wash
     wash_feed = None
     if wash is not None:
         wash_feed = drawn([Intake(wash.water_depth, 1.0)], wash.water_flow)
     feed = drawn(chosen.intakes, chosen.flow)
-    return Setting(chosen, feed, wash_feed, column, column.surroundings())
+    return Setting(chosen, feed, wash_feed, now, now.surroundings())
 
 
 def outcome(setting: Setting, plant: Plant) -> dict[str, float]:

@@ -5,12 +5,14 @@ from dataclasses import dataclass
 
 import xarray as xr
 
+from strata.column.column import Column
 from strata.lake.site import Lake
 from strata.plant.account import Account
 from strata.plant.operate import operate
 from strata.plant.plan import Plan
 from strata.studies.outlet import vary_outlets
 from strata.studies.separate import (
+    column_today,
     separate,
     separate_by_lime,
     separate_by_wash,
@@ -19,17 +21,20 @@ from strata.studies.separate import (
 )
 
 
-def account_today(lake: Lake, plan: Plan, plant: str | None = None) -> Account:
+def account_today(
+    lake: Lake, plan: Plan, plant: str | None = None, column: Column | None = None
+) -> Account:
     """Return what a plant of a plan (the first, or by name) does today at full load."""
-    today = setting_of(lake, plan, plant)
+    today = setting_of(lake, plan, plant, column)
     run = operate(today.plant, today.feed, today.wash_feed, lake.site)
     return Account(today.plant, run, lake.site)
 
 
 def accounts_today(lake: Lake, plans: Sequence[Plan]) -> dict[str, Account]:
     """Return the accounts of all plants, by plan and plant."""
+    column = column_today(lake)
     return {
-        f"{plan.name}, {plant.name}": account_today(lake, plan, plant.name)
+        f"{plan.name}, {plant.name}": account_today(lake, plan, plant.name, column)
         for plan in plans
         for plant in plan.plants
     }

@@ -10,7 +10,7 @@ from dataclasses import fields
 import numpy as np
 from numpy.typing import NDArray
 
-from strata.column import kernel
+from strata.column import gases, kernel
 from strata.column.air import air_table
 from strata.column.laws import bed_coefficient, law_of, staircase_window
 from strata.column.slow import SlowProperties, slow_properties
@@ -186,7 +186,7 @@ class Column:
         """Return (n, 3) conditional constants of the carbonate system of the layers."""
         site = self.lake.site
         constants = np.empty((len(values), 3))
-        kernel.carbonate_rows(
+        gases.carbonate_rows(
             values, pressure, site.magnesium_share, site.calcium_share, constants
         )
         return constants
@@ -194,7 +194,7 @@ class Column:
     def _gas_load(self, values: Array, constants: Array) -> tuple[Array, Array]:
         """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases."""
         mass, space = np.empty(len(values)), np.empty(len(values))
-        kernel.gas_load(
+        gases.gas_load(
             values, constants, self.hydrogen, self.molar_mass, self.molar_volume, mass, space
         )
         return mass, space
@@ -297,7 +297,7 @@ class Column:
     def free_co2(self) -> Array:
         """Return free CO2 of the layers [mol m-3]."""
         co2 = np.empty(self.basin.layers)
-        kernel.free_co2_rows(self.state.values, self.constants, self.hydrogen, co2)
+        gases.free_co2_rows(self.state.values, self.constants, self.hydrogen, co2)
         return co2
 
     def gas_load(self) -> tuple[Array, Array]:
@@ -336,7 +336,7 @@ class Column:
             row[0, index(name)] = amount
         constants = self._carbonate_constants(row, np.array([pressure]))
         mass, space = np.empty(1), np.empty(1)
-        kernel.gas_load(
+        gases.gas_load(
             row, constants, np.full(1, 1e-4), self.molar_mass, self.molar_volume, mass, space
         )
         return row[0], float(mass[0]), float(space[0])

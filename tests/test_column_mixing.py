@@ -101,6 +101,17 @@ def test_pooling_does_nothing_to_a_stable_column():
     assert np.array_equal(values, before)
 
 
+def test_pooling_ends_where_stability_is_negative_by_round_off_alone():
+    # two layers that differ by less than their density can tell: no block grows from there
+    values = np.column_stack([np.full(4, 24.0), [1.0, 2.0, 2.0, 3.0]])
+    stability = np.array([0.0, 1e-4, -1e-19, 1e-4, 0.0])
+    before = values.copy()
+    pressure = np.linspace(1e5, 2e5, 5)
+    still = np.zeros(4)
+    pool(values, still, still.copy(), np.ones(4), pressure, CONTRACTION, stability)
+    assert np.array_equal(values, before)
+
+
 def energy_of(values, mass, space, volume, depth, pressure):
     """Return the potential energy [J] of a column that is compared at one pressure."""
     from strata.water.density import parcel_density

@@ -1,7 +1,7 @@
 """How the casts of the demo lake were made: its supply, run to a steady state, then measured.
 
 Run from the checkout with ``python scripts/make_demo_lake.py``.  Starting from a rough guess,
-the lake of ``profiles/lake.toml`` is left alone for thousands of years under its own climate,
+the lake of ``profiles/lake.toml`` is brought to its steady state under its own climate,
 springs and bed, until no tracer anywhere drifts by more than a small share of its range in a
 century.  A survey is then drawn from that state as an instrument would see it: a CTD at 1 m
 and water samples at some twenty depths, each with its noise.  Nothing in a projection pulls
@@ -11,7 +11,6 @@ the lake back to these casts.
 import argparse
 import shutil
 import tempfile
-from datetime import date
 from itertools import pairwise
 from pathlib import Path
 
@@ -20,13 +19,10 @@ from scipy.interpolate import PchipInterpolator
 from scipy.signal import find_peaks
 
 import strata
-from strata import clock
 from strata.column.column import Column
-from strata.column.start import first_day
 from strata.column.tracers import DIC, OXYGEN, SALINITY, TRACERS
 from strata.compiled import broadcast
-from strata.coupling import Fleet
-from strata.projection import carry_on
+from strata.studies.steady import steady
 from strata.water.density import in_situ_temperature
 from strata.water.salinity import salinity_from_conductivity
 
@@ -123,37 +119,6 @@ def write_guess(folder: Path, day: str) -> None:
     write_samples(folder / "gas.csv", at, samples, day)
 
 
-def settle(column: Column, years: int, step_days: float) -> None:
-    """Leave a column alone for whole years."""
-    alone = Fleet(None, column.lake)
-    begin = date(2000, 1, 1)
-    year = clock.spans(begin, date(2001, 1, 1), [])
-    for _ in range(years):
-        for span in year:
-            carry_on(column, alone, span, begin, step_days)
-
-
-def spin_up(lake, most: int, step_days: float, tolerance: float, values=None) -> Column:
-    """Run a lake until its largest drift per century, relative to each range, is small."""
-    column = Column(lake, first_day(lake) if values is None else values)
-    done = 0
-    while done < most:
-        before = column.values.copy()
-        settle(column, 100, step_days)
-        done += 100
-        span = np.ptp(column.values, axis=0)
-        drift = np.abs(column.values - before).max(axis=0) / np.where(span > 0, span, 1)
-        worst = int(np.argmax(drift))
-        print(
-            f"{done} years: largest drift {100 * drift[worst]:.2f} % of its range per century"
-            f" ({TRACERS[worst]}), books {column.ledger_error().max():.1e}",
-            flush=True,
-        )
-        if drift.max() < tolerance:
-            break
-    return column
-
-
 def sample_depths(column: Column) -> np.ndarray:
     """Return depths for water samples: across every gradient, and between them."""
     z, stability = column.basin.faces[1:-1], column.seen.stability[1:-1]
@@ -208,7 +173,6 @@ def main() -> None:
     """Make the casts of the demo lake."""
     parser = argparse.ArgumentParser(description=__doc__)
     parser.add_argument("--years", type=int, default=6000, help="longest spin-up")
-    parser.add_argument("--step-days", type=float, default=5.0)
     parser.add_argument("--out", type=Path, default=HERE, help="folder for the casts")
     parser.add_argument("--from", dest="state", type=Path, help="state (.npy) to go on from")
     parser.add_argument("--keep", type=Path, help="where to keep the steady state (.npy)")
@@ -221,8 +185,12 @@ def main() -> None:
         write_guess(copy, "2027-01-01")
         lake = strata.load_lake(copy / "lake.toml")
     start = np.load(options.state) if options.state else None
-    column = spin_up(lake, options.years, options.step_days, 0.005, start)
-    settle(column, 200, 1.0)  # the last years with the step of a projection
+    found = steady(lake, most_years=options.years, tolerance=0.005, values=start)
+    print(
+        f"{found.years} years stand for {found.stands_for:.0f}; largest drift at the end"
+        f" {100 * found.drift:.2f} % of a tracer's range per century"
+    )
+    column = Column(lake, found.values)
     if options.keep:
         np.save(options.keep, column.values)
     survey(column, options.out, lake.site.start.isoformat())

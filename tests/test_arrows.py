@@ -49,7 +49,7 @@ ALLOWED = {
     | PHYSICS
     | {"checkpoint", "clock", "coupling", "fingerprint", "results"},
     "inputs": SMALL | PHYSICS | {"fingerprint", "limits", "margins", "gradients"},
-    "studies": SMALL | PHYSICS | DERIVED | {"coupling", "projection"},
+    "studies": SMALL | PHYSICS | DERIVED | {"clock", "coupling", "projection"},
     "report": SMALL | PHYSICS | DERIVED | {"caution"},
     "cli": SMALL | DERIVED | {"caution", "inputs", "projection", "studies", "report"},
 }

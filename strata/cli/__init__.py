@@ -14,6 +14,7 @@ COMMANDS = {
     "inspect": "Show today's column: gas in place, saturation, stability.",
     "project": "Project a lake over decades, with a plan or left alone.",
     "compare": "Hold plans against limits and against the lake left alone.",
+    "steady": "Bring a lake to its own steady state; compare it with the casts.",
     "separate": "Show what the plants of a plan make of their feed; vary their settings.",
     "check": "Validate input files without running anything.",
 }

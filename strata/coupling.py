@@ -103,7 +103,8 @@ class Fleet:
             takes += draws
             gives += running.gives
             self.running.append(running)
-            self._warn(plant.name, day, operation.warnings)
+            if day.month == 1 or timetable.set_anew(planned, day):
+                self._warn(plant.name, day, operation.warnings)
         reference = [draw @ column.values / draw.sum() for draw in takes]
         return Working(
             takes, gives, np.array(reference).reshape(len(takes), len(column.tracers))

@@ -136,7 +136,7 @@ def test_a_riser_takes_over_the_pumping():
     assert with_pump.flow == DEEP.flow
     # a pump of 75 %, and nothing else is pumped: the last stage is above the air
     assert narrow.power["pump"] == pytest.approx(
-        with_pump.pump_pressure * 12.0 / 0.75, rel=1e-4
+        with_pump.pump_pressure * 12.0 / 0.75, rel=1e-3
     )
     alone = lift_of(simple_plant(Stage(1e5), riser=Riser(0.8, 8)), DEEP, SITE, demanded=False)
     assert alone.flow == alone.self_lifted > 0.0

@@ -40,7 +40,7 @@ def test_the_self_lifted_flow_needs_no_pump_and_more_flow_does():
     assert nyos(0.8 * own).pump_pressure < 0.0
     single = pump_pressure(PIPE, 203.0, 25.3, 1.0, GASES, AIR, FOOT, 1.2 * own, gravity=9.78)
     # it looks at fewer pressures on the way
-    assert single == pytest.approx(nyos(1.2 * own).pump_pressure, rel=1e-4)
+    assert single == pytest.approx(nyos(1.2 * own).pump_pressure, rel=2e-3)
 
 
 def test_the_pressure_of_a_pump_does_not_hang_on_the_points_looked_at(monkeypatch):

@@ -9,97 +9,21 @@ from hypothesis import settings
 from hypothesis import strategies as st
 
 from strata.gas import henry_constant
-from strata.gas.henry import henry_of_row
-from strata.plant.chemistry import part, table_of
+from strata.plant.chemistry import part
 from strata.plant.operate import operate
 from strata.plant.plan import Lime, Stage
 from strata.plant.separator import approach_of, run_train, separate
 from strata.plant.streams import WaterStream
 from strata.species import LAKE_GASES, VAPOUR
-from strata.water.density import pure_water_density, specific_heat
-from strata.water.transport import vapour_pressure
-from tests.plant_cases import DEEP, ENGINE_SITE, PLAIN_SITE, SITE, simple_plant, table
+from tests.plant_cases import DEEP, PLAIN_SITE, SITE, simple_plant
 
 METHANE_ONLY = WaterStream(1.0, 25.0, 0.0, {"CH4": 16.0, "DIC": 0.0, "alkalinity": 0.0})
-
-
-@pytest.mark.parametrize("pressure", [0.1e5, 1e5, 5e5, 10e5])
-@pytest.mark.parametrize("cooling", [False, True])
-def test_one_gas_by_plain_henry_is_recovered_to_one_minus_p_over_h_c(pressure, cooling):
-    # What stays is P / H, so what leaves over what came is 1 - P / (H c0), H at the
-    # temperature at which the water leaves.
-    done = part(METHANE_ONLY, pressure, PLAIN_SITE, cooling=cooling)
-    constant = float(henry_constant("CH4", done.water.temperature))
-    expected = 1.0 - pressure / (constant * 16.0)
-    assert done.gas.of("CH4") / 16.0 == pytest.approx(expected, abs=1e-9)
 
 
 def test_nothing_leaves_above_the_bubble_point():
     done = part(METHANE_ONLY, 12e5, PLAIN_SITE)
     assert done.gas.total == 0.0
     assert done.water.temperature == METHANE_ONLY.temperature
-
-
-def feed_of(row):
-    """Return one row of the separator table as a stream of 1 m3/s, and its methane."""
-    alkalinity = row["alk_meq_kgw"]
-    methane, carbon = row["ch4_in_mmol_kgw"], alkalinity + row["co2_added_mmol_kgw"]
-    mass = 1.0 + 1e-6 * (
-        alkalinity * 84.007 + methane * 16.0425 + row["co2_added_mmol_kgw"] * 44.0095
-    )
-    per = 1e-3 * row["rho_in_kg_m3"] / mass  # m3 of solution hold so many kg of water x 1e-3
-    dissolved = {"CH4": methane * per, "DIC": carbon * per, "alkalinity": alkalinity * per}
-    salinity = alkalinity * 84.007e-3 / mass
-    return WaterStream(1.0, row["T_degC"], salinity, dissolved)
-
-
-def test_agrees_with_the_reference_flashes():
-    # f_separator_flash: PHREEQC 3.8.6 with the CH4 constant of G7-04.  Tolerances of the
-    # table: 0.5 % of the methane released where more than 30 % is, else 4 %; mole fraction
-    # 0.005.
-    compared = 0
-    for row in table("f_separator_flash.csv"):
-        if not row["gas_mmol_kgw"] > 0.0:
-            continue
-        feed = feed_of(row)
-        gas = part(feed, row["p_bar_abs"] * 1e5, ENGINE_SITE, cooling=False).gas
-        released = gas.of("CH4") / feed.of("CH4")
-        expected = row["frac_CH4_to_gas"]
-        if expected > 0.3:
-            assert released == pytest.approx(expected, rel=0.005), row
-        else:
-            # near onset 0.5 % of the bubble pressure, the table's own tolerance of it, is
-            # 0.003
-            assert released == pytest.approx(expected, rel=0.04, abs=0.003), row
-        assert gas.of("CH4") / gas.total == pytest.approx(row["y_CH4"], abs=0.005), row
-        compared += 1
-    assert compared > 40
-
-
-def test_the_water_gives_up_the_heat_that_desorption_and_evaporation_take():
-    # Enthalpies by van 't Hoff from the same Henry functions and by Clausius and Clapeyron
-    # from the vapour pressure, here by wider differences than the code's: R T^2 d ln(k)/dT.
-    done = part(DEEP, 1e5, SITE)
-    t = done.water.temperature
-    kelvin = t + 273.15
-
-    def slope(function):
-        return (
-            8.314462618
-            * kelvin**2
-            * (np.log(function(t + 0.25)) - np.log(function(t - 0.25)))
-            / 0.5
-        )
-
-    rows = table_of(SITE).rows
-    heat = done.gas.of(VAPOUR) * slope(vapour_pressure)
-    for i, gas in enumerate(LAKE_GASES):
-        heat += done.gas.of(gas) * slope(lambda x, i=i: henry_of_row(x, rows[i]))
-    capacity = pure_water_density(t, 1e5) * specific_heat(t, DEEP.salinity, 1e5)
-    given = DEEP.flow * capacity * (DEEP.temperature - t)
-    # 0.1 % of the heat taken up
-    assert given == pytest.approx(heat, rel=1e-3)
-    assert 0.2 < DEEP.temperature - t < 0.8
 
 
 def test_enthalpies_are_those_of_the_literature():

@@ -9,73 +9,10 @@ from hypothesis import given as drawn
 from hypothesis import strategies as st
 
 from strata.errors import ComputationError
-from strata.gas import henry_constant
 from strata.plant.plan import Wash
-from strata.plant.streams import GasStream, WaterStream
+from strata.plant.streams import GasStream
 from strata.plant.wash import wash_gas
-from tests.plant_cases import ENGINE_SITE, PLAIN_SITE, SHALLOW, SITE, table
-
-# Kremser 1930: share absorbed (A^(N+1) - A) / (A^(N+1) - 1), N / (N + 1) where A = 1; the
-# three values are printed in textbooks.
-KREMSER = {(1.4, 5): 0.9387, (2.0, 4): 0.96774, (1.0, 6): 6 / 7}
-
-
-def kremser(factor, stages):
-    if factor == 1.0:
-        return stages / (stages + 1)
-    return (factor ** (stages + 1) - factor) / (factor ** (stages + 1) - 1)
-
-
-@pytest.mark.parametrize(("factor", "stages"), KREMSER)
-def test_a_trace_of_co2_in_methane_follows_kremser(factor, stages):
-    assert kremser(factor, stages) == pytest.approx(KREMSER[factor, stages], abs=5e-5)
-    pressure, temperature, trace = 5e5, 23.0, 1e-9
-    # water saturated with methane takes none, so the gas flow does not change
-    methane = pressure / float(henry_constant("CH4", temperature))
-    constant = float(henry_constant("CO2", temperature)) / pressure  # y / c
-    gas = GasStream({"CH4": 10.0, "CO2": trace}, temperature, pressure)
-    water = WaterStream(factor * constant * 10.0, temperature, 0.0, {"CH4": methane})
-    out = wash_gas(Wash(pressure, 1.0, 0.0, stages), gas, water, PLAIN_SITE).gas
-    assert 1.0 - out.of("CO2") / trace == pytest.approx(kremser(factor, stages), abs=1e-6)
-
-
-def test_a_stage_of_some_efficiency_follows_the_same_balance():
-    # One stage, efficiency E of Murphree: y1 = (1 - E) y0 + E K c, L c = G (y0 - y1), so that
-    # y1 / y0 = (1 - E + E / A) / (1 + E / A).
-    pressure, temperature, efficiency, factor = 5e5, 23.0, 0.6, 1.4
-    methane = pressure / float(henry_constant("CH4", temperature))
-    constant = float(henry_constant("CO2", temperature)) / pressure
-    gas = GasStream({"CH4": 10.0, "CO2": 1e-9}, temperature, pressure)
-    water = WaterStream(factor * constant * 10.0, temperature, 0.0, {"CH4": methane})
-    wash = Wash(pressure, 1.0, 0.0, 1, efficiency=efficiency)
-    out = wash_gas(wash, gas, water, PLAIN_SITE).gas
-    expected = (1 - efficiency + efficiency / factor) / (1 + efficiency / factor)
-    assert out.of("CO2") / 1e-9 == pytest.approx(expected, rel=1e-6)
-
-
-def test_agrees_with_the_reference_columns():
-    # f_wash_column: PHREEQC 3.8.6 with the CH4 constant of G7-04; gas out within 1 %, mole
-    # fractions within 0.005.
-    for row in table("f_wash_column.csv"):
-        water = WaterStream(
-            1e-3 / 0.9976,
-            row["T_degC"],
-            0.0,  # m3 that hold a kilogram of water
-            {
-                "CH4": 0.9976 * row["water_in_CH4_mmol_kgw"],
-                "DIC": 0.9976 * row["water_in_CO2_mmol_kgw"],
-                "alkalinity": 0.0,
-            },
-        )
-        flows = {gas: 1e-3 * row[f"gas_in_{gas}_mmol_kgw"] for gas in ("CH4", "CO2")}
-        gas = GasStream(flows, row["T_degC"], row["p_bar_abs"] * 1e5)
-        wash = Wash(gas.pressure, 1.0, 0.0, int(row["stages"]))
-        out = wash_gas(wash, gas, water, ENGINE_SITE).gas
-        expected = row["gas_out_CH4_mmol_kgw"] + row["gas_out_CO2_mmol_kgw"]
-        assert 1e3 * out.dry == pytest.approx(expected, rel=0.01), row
-        assert out.of("CH4") / out.total == pytest.approx(row["y_out_CH4"], abs=0.005), row
-        assert out.of("CO2") / out.total == pytest.approx(row["y_out_CO2"], abs=0.005), row
-
+from tests.plant_cases import SHALLOW, SITE
 
 RAW = GasStream(
     {"CH4": 170.0, "CO2": 300.0, "N2": 5.0, "Ar": 0.1, "H2S": 0.5, "O2": 0.0}, 25.0, 8e5

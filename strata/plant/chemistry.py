@@ -42,6 +42,7 @@ from strata.water.transport import vapour_pressure_at
 CARBON = LAKE_GASES.index("CO2")
 _TEMPERATURE_STEP = 1e-3  # K, of the numerical slope of ln of Henry's constant
 _ROUNDS = 30
+_SETTLED = 1e-7  # K, of the temperature of the water that leaves
 
 
 @lru_cache(maxsize=8)
@@ -187,8 +188,8 @@ def _part(t, s, p, alk, c, approach, cooling, carbon, rows, pairs, laws, gas, y,
     Fills gas[0], y[0] and code[0].  The heat of desorption and evaporation at the end
     temperature equals what the water gives up in cooling to it.
     """
-    end = t
-    for _ in range(_ROUNDS):
+    end, last, before = t, t, 0.0
+    for count in range(_ROUNDS):
         one[0] = end
         flash_rows(
             one[0:1], one[1:2], one[2:3], one[3:4], c, carbon, rows, pairs, laws, gas, y, code
@@ -199,10 +200,14 @@ def _part(t, s, p, alk, c, approach, cooling, carbon, rows, pairs, laws, gas, y,
         for i in range(c.shape[1]):
             heat += gas[0] * y[0, i] * _desorption(end, rows[i])
         capacity = pure_water_density(end, p) * specific_heat(end, s, p)
-        new = t - approach * heat / capacity
-        if abs(new - end) < 1e-10:
-            return new
-        end = new
+        gap = t - approach * heat / capacity - end
+        if abs(gap) < _SETTLED:
+            return end + gap
+        step = gap
+        if count > 0 and gap != before:  # secant
+            step = gap * (end - last) / (before - gap)
+        last, before = end, gap
+        end += step
     return end
 
 

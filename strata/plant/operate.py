@@ -4,8 +4,9 @@ The units are in the modules beside this one.  Here they are put in order, gas i
 is added up and the balance of every element is struck over the whole plant.
 """
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
+from functools import cache, partial
 from typing import Any
 
 from strata.errors import ComputationError
@@ -37,6 +38,9 @@ BALANCE = 1e-10
 SCALING = 0.3
 
 
+_gravity = cache(standard_gravity)
+
+
 @dataclass(frozen=True)
 class Operation:
     """What a plant makes of its feed, per second."""
@@ -52,8 +56,13 @@ class Operation:
         str, float
     ]  # W by name; "electric" is made, "net" is left, all else is used
     balance: Mapping[str, float]  # element -> (in - out) / throughput
-    warnings: tuple[str, ...]
     streams: Mapping[str, WaterStream | GasStream] = field(default_factory=dict)
+    look: Callable[[], tuple[str, ...]] = tuple  # for what a user should act on
+
+    @property
+    def warnings(self) -> tuple[str, ...]:
+        """Return what a user should act on; worked out when it is asked for."""
+        return self.look()
 
     @property
     def recovery(self) -> float:
@@ -129,12 +138,11 @@ def operate(
         kiln_carbon_dioxide=limed.lime * KILN_CARBON_DIOXIDE,
         power={**used, "electric": electric, "net": electric - used_sum},
         balance=balance,
-        warnings=(),
         streams=_streams(
             feed, limed.water, gases, wash_feed, washed_water, water, product, vented
         ),
     )
-    return replace(operation, warnings=_warnings(plant, limed, feed, operation, site))
+    return replace(operation, look=partial(_warnings, plant, limed, feed, operation, site))
 
 
 def _streams(
@@ -217,7 +225,7 @@ def _dissolved_again(
 
 def pressure_at(depth: float, site: Site) -> float:
     """Return the pressure [Pa] at a depth of fresh water."""
-    return site.air_pressure + 1000.0 * standard_gravity(site.latitude) * depth
+    return site.air_pressure + 1000.0 * _gravity(site.latitude) * depth
 
 
 def _pumping(
@@ -235,7 +243,7 @@ def _pumping(
     """
     first, last = plant.stages[0].pressure, plant.stages[-1].pressure
     if plant.riser is None:
-        head = 1000.0 * standard_gravity(site.latitude) * plant.pump_head
+        head = 1000.0 * _gravity(site.latitude) * plant.pump_head
         rise = head + max(first - site.air_pressure, 0.0)
     else:
         rise = _riser_pressure(plant, limed, site)
@@ -276,7 +284,7 @@ def lift_of(plant: Plant, water: WaterStream, site: Site, demanded: bool = True)
 
 def _laws(site: Site) -> dict[str, Any]:
     """Return gravity and laws as the riser takes them."""
-    return {"gravity": standard_gravity(site.latitude), "laws": laws_of(site)}
+    return {"gravity": _gravity(site.latitude), "laws": laws_of(site)}
 
 
 def _in_riser(
@@ -286,7 +294,7 @@ def _in_riser(
 
     The lake above the intake weighs as much as the water of the intake, which is within 0.3 %.
     """
-    gravity = standard_gravity(site.latitude)
+    gravity = _gravity(site.latitude)
     middle = site.air_pressure + 500.0 * gravity * plant.intake_depth
     weight = density_of(water, site, middle) * gravity
     foot = site.air_pressure + weight * plant.intake_depth

@@ -43,6 +43,8 @@ _CRITICAL = np.array(
     ]
     + [WATER_CRITICAL]
 )
+# with the cube root of Tc / Pc, to which a volume goes
+_CRITICAL = np.column_stack([_CRITICAL, np.cbrt(_CRITICAL[:, 0] / _CRITICAL[:, 1])])
 _COEFFICIENTS = np.array([_HEAT_CAPACITY[g] for g in _NAMES])
 
 
@@ -57,18 +59,16 @@ def _virial(t, y, critical):
     for i in range(len(y)):
         if y[i] <= 0.0:
             continue
-        for j in range(len(y)):
+        for j in range(i + 1):
             if y[j] <= 0.0:
                 continue
             tc = math.sqrt(critical[i, 0] * critical[j, 0])
             # RTc/Pc of each by cube roots of volume
-            vi = (critical[i, 0] / critical[i, 1]) ** (1.0 / 3.0)
-            vj = (critical[j, 0] / critical[j, 1]) ** (1.0 / 3.0)
-            scale = GAS_CONSTANT * (0.5 * (vi + vj)) ** 3
+            scale = GAS_CONSTANT * (0.5 * (critical[i, 3] + critical[j, 3])) ** 3
             omega = 0.5 * (critical[i, 2] + critical[j, 2])
             x = t / tc
             first, second = 0.422 * x**-1.6, 0.172 * x**-4.2
-            weight = y[i] * y[j] * scale
+            weight = y[i] * y[j] * scale * (1.0 if i == j else 2.0)
             b += weight * (0.083 - first + omega * (0.139 - second))
             slope += weight * (1.6 * first + omega * 4.2 * second) / t
     return b, slope

@@ -85,6 +85,12 @@ def plant_on(plant: Plant, day: date) -> Plant:
     )
 
 
+def set_anew(plant: Plant, day: date) -> bool:
+    """Return whether a plant starts on a day, or is set differently from the day before."""
+    before = day - timedelta(days=1)
+    return load_factor(plant, before) <= 0.0 or plant_on(plant, day) != plant_on(plant, before)
+
+
 def runs_on_feed(plant: Plant, methane: float) -> bool:
     """Return whether the feed holds enough methane [mol/m3] for the plant to go on."""
     return methane >= plant.least_feed_methane

@@ -169,7 +169,7 @@ def pool(values, gas_mass, gas_volume, volume, face_pressure, contraction, stabi
                     nxt += sign
                     growing = True
         settle(values, gas_mass, gas_volume, volume, top, foot)
-        # where stability was below nought by round-off alone, or by what a block took in since,
+        # where stability was below nought by round-off alone, or by what a block took in,
         # no block grew: the next face is looked at all the same
         f = max(foot, f) + 1
     return blocks

@@ -35,6 +35,8 @@ from strata.species import VAPOUR
 Array = NDArray[np.float64]
 
 BOILS = -3
+#: Share of the pressure of ideal gases below which water gives off gas by any of the laws.
+_SURE = 0.7
 _ROUNDS = 200
 _STEPS = 400
 
@@ -111,13 +113,22 @@ def _flash(t, s, alk, c, p, carbon, rows, pairs, laws, y, work):
     if carbon >= 0:
         k1, k2, kw = carbonate_constants(t, ionic_strength_of(s, alk, 0.0, 0.0), p)
         free[carbon], _ = free_co2(c[carbon], alk, k1, k2, kw, 1e-4)
-    bubble, code = bubble_of(
-        t, s, alk, free[:n], rows, pairs, laws, y, henry, reference, roots, scratch, ln_phi
-    )
-    if code == 0 and p >= bubble:
-        y[:] = 0.0
-        return 0.0, 0
     liquid_side(t, s, alk, free[:n], rows, laws, henry, reference)
+    ideal, code = henry[n], 0  # what the gases press as ideal ones
+    for i in range(n):
+        y[i] = henry[i] * free[i]
+        ideal += y[i]
+    y[n] = henry[n]
+    if p > _SURE * ideal:
+        bubble, code = bubble_of(
+            t, s, alk, free[:n], rows, pairs, laws, y, henry, reference, roots, scratch, ln_phi
+        )
+        if code == 0 and p >= bubble:
+            y[:] = 0.0
+            return 0.0, 0
+        liquid_side(t, s, alk, free[:n], rows, laws, henry, reference)
+    elif ideal > 0.0:
+        y /= ideal
     real = laws[at.REAL_GAS] != 0.0
     if real:
         attraction_roots(t, rows, roots)

@@ -8,10 +8,11 @@ import pytest
 import synthetic
 from matplotlib.figure import Figure
 
+from strata import results
 from strata.plant.account import Account
 from strata.plant.operate import operate
 from strata.plant.plan import Intake, Lime, Plan, Return, Riser, Stage, Wash
-from strata.report import plant_tables, sweeps
+from strata.report import plant_tables, plot, sweeps
 from strata.report.diagram import diagram
 from strata.studies.today import study_plant
 from tests.plant_cases import DEEP, SHALLOW, SITE, simple_plant
@@ -135,3 +136,27 @@ def test_tables_of_a_study_hold_the_best_pressure_and_every_sweep(study):
     one = next(table for table in found if table.caption.startswith("One separator"))
     best = study.sweeps["pressure"]["best_pressure"].sel(case="CO2 free", aim="net energy")
     assert f"{float(best) / 1e5:.2f}" in [row[1] for row in one.rows]
+
+
+def test_a_series_of_a_plant_is_drawn_by_year_with_its_range():
+    years = 2030.0 + np.arange(0, 73) / 12.0
+    values = np.where(years < 2032.0, np.nan, 10.0 + np.tile([0.0, 2.0, -2.0], 25)[:73])
+    middle, mean, low, high = plot.by_year(years, values)
+    np.testing.assert_allclose(middle, 2030.5 + np.arange(6))
+    assert np.isnan(mean[:2]).all()  # it did not run
+    np.testing.assert_allclose(mean[2:], 10.0)
+    np.testing.assert_allclose(low[2:], 8.0)
+    np.testing.assert_allclose(high[2:], 12.0)
+    short = plot.by_year(years[:25], values[:25])
+    np.testing.assert_array_equal(short[0], years[:25])
+
+
+def test_the_depth_at_which_return_water_spreads_is_drawn_with_the_main_gradient():
+    lake = synthetic.lake(60)
+    record = synthetic.record(lake, years=8.0)
+    run = results.dataset(record, lake, synthetic.plan())
+    ax = Figure().subplots()
+    *_, gradient = plot.trap_depth(run, ax)
+    np.testing.assert_array_equal(gradient.get_ydata(), run["gradient_depth"])
+    spread = ax.lines[0].get_ydata()
+    np.testing.assert_allclose(spread[np.isfinite(spread)], 203.0)  # as the record has it

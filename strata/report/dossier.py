@@ -270,7 +270,9 @@ def _pictures(
         )
     )
     if with_plants:
-        drawn.append(_picture(figures.plants(with_plants), words.plant_caption(with_plants)))
+        reading = "Lines are means of a year, bands its least and largest month."
+        said = words.plant_caption(with_plants)
+        drawn.append(_picture(figures.plants(with_plants), said, reading))
     for name, sweep in separate.items():
         drawn.append(
             _picture(

@@ -452,10 +452,26 @@ def methane_fate(result: xr.Dataset, ax: Axes) -> list[Artist]:
     return artists
 
 
+def by_year(years: Array, values: Array) -> tuple[Array, Array, Array, Array]:
+    """Return the middle of every calendar year, and mean, least and largest value in it.
+
+    Runs shorter than four years stay as they are; years without a value have none.
+    """
+    if years[-1] - years[0] < 4.0:
+        return years, values, values, values
+    whole = np.floor(years + 1e-6)
+    found = []
+    for year in np.unique(whole)[:-1]:  # the last record alone begins a year
+        known = values[(whole == year) & np.isfinite(values)]
+        spread = (known.mean(), known.min(), known.max()) if known.size else 3 * (np.nan,)
+        found.append((year + 0.5, *spread))
+    return tuple(np.array(found).T)
+
+
 def plant_series(
     result: xr.Dataset, name: str, ax: Axes, factor: float = 1.0, unit: str = ""
 ) -> list[Artist]:
-    """Draw one series of every plant of a result.
+    """Draw one series of every plant of a result: its means by year, their range as a band.
 
     Parameters
     ----------
@@ -474,7 +490,10 @@ def plant_series(
         for number, plant in enumerate(result["plant"].values):
             values = result[f"plant_{name}"].sel(plant=plant).values / factor
             style = plan_style(number + 1)
-            artists += ax.plot(calendar_years(result), values, **style, label=str(plant))
+            years, mean, low, high = by_year(calendar_years(result), values)
+            artists += ax.plot(years, mean, **style, label=str(plant))
+            band = {"color": style["color"], "alpha": 0.25, "linewidth": 0.0}
+            artists.append(ax.fill_between(years, low, high, **band))
     ax.set_xlabel("year")
     ax.set_ylabel(f"{words.long_name} [{unit or words.unit}]")
     return artists

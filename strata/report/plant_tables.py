@@ -241,7 +241,7 @@ def by_pressure(sweep: xr.Dataset) -> list[Table]:
         ),
         Table(
             "Best pressure of one separator, by what is aimed at.",
-            ["aim", "case", "bar", "why"],
+            ["aim", "case", "best [bar]", "why"],
             bests,
             left=4,
         ),
@@ -340,7 +340,7 @@ def text(table: Table) -> str:
     if table.headings[-1] != "why":
         return f"{caption}\n\n{aligned(table.headings, table.rows, table.left)}"
     lines = [
-        fill(f"{', '.join(words)}: {best} {table.headings[-2]}, {why}", 95,
+        fill(f"{', '.join(words)}: {best} bar, {why}", 95,
              subsequent_indent="    ")
         for *words, best, why in table.rows
     ]  # fmt: skip

@@ -42,7 +42,10 @@ def separator(sweep: xr.Dataset) -> Figure:
     for ax in axes[0, :2]:
         ax.set_ylim(0.0, 1.02)
     axes[0, 2].margins(y=0.15)
-    axes[1, 1].set_yscale("log")
+    # pumps and compressors of a riser may have nothing to do between vacuum and pressure
+    axes[1, 1].set_yscale("symlog", linthresh=10.0)
+    axes[1, 1].set_ylim(bottom=0.0)
+    axes[1, 1].yaxis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
     legend(figure, axes[0, 0])
     return figure
 

@@ -6,6 +6,7 @@ from datetime import date
 import numpy as np
 import pytest
 
+import strata
 from strata.errors import OutOfRangeError
 from strata.plant.plan import Lime, Plan, Plant, Return, Stage, Wash
 from strata.studies.outlet import VARIATIONS, vary_outlets
@@ -134,3 +135,14 @@ def test_outlets_are_varied_by_a_kelvin_and_by_their_ports():
     assert float(dilution.sel(variation="four times the ports")) > float(
         dilution.sel(variation="a quarter of the ports")
     )
+
+
+@pytest.mark.parametrize("name", ["surface-return", "washed-return", "staged-lime"])
+def test_the_best_pressure_for_net_energy_lies_inside_the_range_for_the_demos_plans(name):
+    lake = strata.load_lake(strata.demo_files() / "lake.toml")
+    plan = strata.load_plan(strata.demo_files() / f"{name}.toml", lake)
+    for plant in plan.plants:
+        sweep = separate(lake, plan, plant.name)
+        best = sweep["best_pressure"].sel(aim="net energy")
+        free, bound = (float(best.sel(case=case)) for case in ("CO2 free", "CO2 bound"))
+        assert sweep["pressure"].values[1] < bound < free < sweep["pressure"].values[-2]

@@ -191,7 +191,6 @@ class _Keeper:
 
     def keep(self, done: int, last: bool) -> None:
         """Write the state after so many spans if it is time to."""
-        self.done = done
         if self.path is None or not (last or time.monotonic() - self._last >= KEEP_EVERY):
             return
         self._last = time.monotonic()
@@ -254,6 +253,6 @@ def _record(
         ledger_error=notes["error"],
         plants=plants,
         return_tags=fleet.tags,
-        warnings=tuple(fleet.warnings),
+        warnings=fleet.warnings,
         options=options,
     )

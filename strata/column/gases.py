@@ -30,31 +30,31 @@ def carbonate_rows(values, pressure, magnesium_share, calcium_share, constants):
 
 
 @compiled
+def refresh_co2(values, constants, hydrogen, layer):
+    """Return free CO2 of a layer [mol m-3], refreshing its hydrogen ions."""
+    co2, hydrogen[layer] = free_co2(
+        values[layer, DIC],
+        values[layer, ALKALINITY],
+        constants[layer, 0],
+        constants[layer, 1],
+        constants[layer, 2],
+        hydrogen[layer],
+    )
+    return co2
+
+
+@compiled
 def free_co2_rows(values, constants, hydrogen, co2):
     """Fill free CO2 of every layer [mol m-3], refreshing the hydrogen ions."""
     for i in range(values.shape[0]):
-        co2[i], hydrogen[i] = free_co2(
-            values[i, DIC],
-            values[i, ALKALINITY],
-            constants[i, 0],
-            constants[i, 1],
-            constants[i, 2],
-            hydrogen[i],
-        )
+        co2[i] = refresh_co2(values, constants, hydrogen, i)
 
 
 @compiled
 def gas_load(values, constants, hydrogen, molar_mass, molar_volume, gas_mass, gas_volume):
     """Fill mass [kg m-3] and volume [m3 m-3] of the dissolved gases, refreshing free CO2."""
     for i in range(values.shape[0]):
-        co2, hydrogen[i] = free_co2(
-            values[i, DIC],
-            values[i, ALKALINITY],
-            constants[i, 0],
-            constants[i, 1],
-            constants[i, 2],
-            hydrogen[i],
-        )
+        co2 = refresh_co2(values, constants, hydrogen, i)
         ch4, n2, o2, h2s = (
             values[i, METHANE],
             values[i, NITROGEN],

@@ -10,7 +10,7 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from strata.column.gases import gas_load
+from strata.column.gases import gas_load, refresh_co2
 from strata.column.mixing import (
     pair_stability,
     pool,
@@ -20,14 +20,12 @@ from strata.column.mixing import (
 from strata.column.reactions import decay, react, reduce_carbon
 from strata.column.surface import deepen
 from strata.column.tracers import (
-    ALKALINITY,
     DIC,
     METHANE,
     TEMPERATURE,
 )
 from strata.column.transport import advect, diffuse
 from strata.compiled import compiled
-from strata.gas.carbonate import free_co2
 
 Array = NDArray[np.float64]
 
@@ -48,8 +46,8 @@ LEDGER_TERMS = (
     "return",
     "sources",
 )
-SURFACE, RAIN, EVAPORATION, OUTLET, RIVERS, SPRINGS, BED, REACTIONS, INTAKE, RETURN = range(10)
-SOURCES = 10
+SURFACE, RAIN, EVAPORATION, OUTLET, RIVERS, SPRINGS = range(6)
+BED, REACTIONS, INTAKE, RETURN, SOURCES = range(6, len(LEDGER_TERMS))
 
 #: Feed changes by more than this share: the plant is solved again.
 FEED_TOLERANCE = 0.005
@@ -87,9 +85,7 @@ class Held(NamedTuple):
     molecular: Array  # (n + 1, m) molecular diffusivity, m2/s
     expansion: Array  # (n + 1,) thermal expansion, 1/K
     drive: Array  # (n + 1,) of the staircase, see there
-    air: (
-        Array  # equilibrium temperature, K A / (rho cp) in m3/s, wind power, rain, evaporation
-    )
+    air: Array  # equilibrium temperature, K A / (rho cp), wind power, rain, evaporation; SI
     exchange: Array  # (m, 2) transfer velocity m/s and concentration at equilibrium with air
     take: Array  # (j, n) withdrawal from each layer, m3/s
     link: Array  # (k, j, m) share of take j that goes into give k
@@ -202,7 +198,7 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn
 
 
 @compiled
-def breathe(values, grid, held, state, dt, constants, hydrogen):
+def breathe(values, grid, held, state, dt):
     """Exchange heat and gases with the air for one step.
 
     Heat goes into the top layer, from where cooling overturns it and wind carries it down;
@@ -223,14 +219,7 @@ def breathe(values, grid, held, state, dt, constants, hydrogen):
             continue
         share = 1.0
         if m == DIC:
-            co2, hydrogen[0] = free_co2(
-                values[0, DIC],
-                values[0, ALKALINITY],
-                constants[0, 0],
-                constants[0, 1],
-                constants[0, 2],
-                hydrogen[0],
-            )
+            co2 = refresh_co2(values, held.constants, state.hydrogen, 0)
             share = co2 / values[0, DIC]
         pull = held.exchange[m, 0] * grid.area[0] * dt
         amount = (
@@ -272,7 +261,7 @@ def advance(state, grid, held, seen, steps, dt):
     if code != DONE:
         return code, 0, layer, 0
     for step in range(steps):
-        breathe(values, grid, held, state, dt, held.constants, state.hydrogen)
+        breathe(values, grid, held, state, dt)
         react(
             values,
             grid.rates,

@@ -6,9 +6,9 @@ in the surface layer (first order); first-order loss of any tracer; reduction of
 methane, CO2 + 4 H2 -> CH4 + 2 H2O (first order, alkalinity kept).
 """
 
+from strata.column.gases import refresh_co2
 from strata.column.tracers import ALKALINITY, DIC, METHANE, OXYGEN, PHOSPHATE, SULFIDE
 from strata.compiled import compiled
-from strata.gas.carbonate import free_co2
 
 RESPIRATION_HALF_OXYGEN = 0.005  # mol m-3; order of 2-10 umol/L, common practice, no source
 
@@ -104,14 +104,7 @@ def reduce_carbon(values, rates, constants, hydrogen, volume, dt, books):
     """Turn free CO2 into methane for one step at the rate of each layer [s-1]."""
     for i in range(values.shape[0]):
         if rates[i] > 0.0 and values[i, DIC] > 0.0:
-            co2, hydrogen[i] = free_co2(
-                values[i, DIC],
-                values[i, ALKALINITY],
-                constants[i, 0],
-                constants[i, 1],
-                constants[i, 2],
-                hydrogen[i],
-            )
+            co2 = refresh_co2(values, constants, hydrogen, i)
             x = rates[i] * dt / (1.0 + rates[i] * dt) * co2
             _book(values, books, i, DIC, -x, volume[i])
             _book(values, books, i, METHANE, x, volume[i])

@@ -33,7 +33,6 @@ TRACERS = (
     "H2S",
     "phosphate",
 )
-FIRST_TAG = len(TRACERS)
 #: The tag that is no share of the water but its age, in years since it entered or the start.
 AGE = "age"
 

@@ -15,10 +15,10 @@ def carry(values, flow, volume, conductance, inflow, dt, steps):
     edge, flux = np.empty((count + 1, tracers)), np.empty((count + 1, tracers))
     work = np.empty((4, *values.shape))
     for _ in range(steps):
-        lost = flow[0] * values[0] * dt
-        advect(values, flow, volume, weight, start, dt, edge, flux)
-        values[0] -= lost / volume[0]
-        values[-1] += flow[-1] * inflow * dt / volume[-1]
+        gain = np.zeros_like(values)
+        gain[0] -= flow[0] * values[0] * dt
+        gain[-1] += flow[-1] * inflow * dt
+        advect(values, flow, volume, weight, start, dt, gain, edge, flux)
         if conductance is not None:
             diffuse(values, conductance, volume, dt, work)
 

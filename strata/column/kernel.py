@@ -129,16 +129,15 @@ def face_flow(held, flow):
     count = held.take.shape[1]
     for f in range(count + 1):
         flow[f] = 0.0
+    for j in range(held.take.shape[0]):
+        for i in range(count):
+            flow[i] -= held.take[j, i]
+    for k in range(held.water.shape[0]):
+        total = held.water[k] + held.entrained[k].sum()
+        for i in range(count):
+            flow[i] += held.given[k, i] * total - held.entrained[k, i]
     for i in range(count - 1, -1, -1):
-        net = 0.0
-        for j in range(held.take.shape[0]):
-            net -= held.take[j, i]
-        for k in range(held.water.shape[0]):
-            total = held.water[k]
-            for n in range(count):
-                total += held.entrained[k, n]
-            net += held.given[k, i] * total - held.entrained[k, i]
-        flow[i] = flow[i + 1] + net
+        flow[i] += flow[i + 1]
 
 
 @compiled
@@ -288,10 +287,9 @@ def advance(state, grid, held, seen, steps, dt):
             exchange_with_streams(
                 values, grid, held, part, state, outlet, gain, withdrawn, carried
             )
-            advect(values, seen.flow, grid.volume, grid.weight, grid.start, part, edge, flux)
-            for i in range(count):
-                for m in range(tracers):
-                    values[i, m] += gain[i, m] / grid.volume[i]
+            advect(
+                values, seen.flow, grid.volume, grid.weight, grid.start, part, gain, edge, flux
+            )
         _conduct(values, grid, held, seen, conductance, lift)
         diffuse(values, conductance, grid.volume, dt, work)
         _load(state, grid, held, gas_mass, gas_volume)
@@ -316,10 +314,9 @@ def advance(state, grid, held, seen, steps, dt):
                 grid.physics[1],
                 seen.stability,
             )
-        for i in range(count):
-            for m in range(tracers):
-                if not np.isfinite(values[i, m]):
-                    return NOT_FINITE, step + 1, i, m
+        layer, tracer = _not_finite(values, carried)
+        if layer >= 0:
+            return NOT_FINITE, step + 1, layer, tracer
         if _feed_changed(values, held):
             return FEED_CHANGED, step + 1, 0, 0
     return DONE, steps, 0, 0
@@ -411,6 +408,24 @@ def _conduct(values, grid, held, seen, conductance, lift):
         for m in range(tracers):
             conductance[f, m] = over * (turbulent + solute + held.molecular[f, m])
         conductance[f, TEMPERATURE] += over * (heat - solute)
+
+
+@compiled
+def _not_finite(values, sums):
+    """Return layer and tracer of the first value that is no number, (-1, -1) if all are."""
+    count, tracers = values.shape
+    for m in range(tracers):
+        sums[m] = 0.0
+    for i in range(count):
+        for m in range(tracers):
+            sums[m] += values[i, m]
+    if np.isfinite(sums.sum()):
+        return -1, -1
+    for i in range(count):
+        for m in range(tracers):
+            if not np.isfinite(values[i, m]):
+                return i, m
+    return -1, -1
 
 
 @compiled

@@ -13,6 +13,8 @@ R^0.72), density ratio R = beta S_z / (alpha T_z), flux ratio
 
 import math
 
+import numpy as np
+
 from strata.compiled import compiled
 from strata.water.density import parcel_density
 
@@ -79,6 +81,15 @@ def staircase_diffusivity(stability, warming, expansion, gravity, drive):
 
 
 @compiled
+def _densities(theta, salt, gas_mass, gas_volume, pressure, contraction, out):
+    """Fill the densities of parcels brought to given pressures [kg m-3]; all (n,)."""
+    for i in range(len(out)):
+        out[i] = parcel_density(
+            theta[i], salt[i], pressure[i], gas_mass[i], gas_volume[i], contraction
+        )
+
+
+@compiled
 def pair_stability(
     values, gas_mass, gas_volume, face_pressure, face_distance, site, stability
 ):
@@ -87,21 +98,17 @@ def pair_stability(
     The two layers at a face are brought to its pressure; ``site`` is (gravity, haline
     contraction).
     """
-    unstable = 0
+    count = values.shape[0]
     gravity, contraction = site[0], site[1]
-    for f in range(1, values.shape[0]):
-        p = face_pressure[f]
-        upper = parcel_density(
-            values[f - 1, 0],
-            values[f - 1, 1],
-            p,
-            gas_mass[f - 1],
-            gas_volume[f - 1],
-            contraction,
-        )
-        lower = parcel_density(
-            values[f, 0], values[f, 1], p, gas_mass[f], gas_volume[f], contraction
-        )
+    theta, salt, at_top, at_foot = np.empty((4, count))
+    for i in range(count):
+        theta[i], salt[i] = values[i, 0], values[i, 1]
+    top, foot = face_pressure[:count], face_pressure[1:]
+    _densities(theta, salt, gas_mass, gas_volume, top, contraction, at_top)
+    _densities(theta, salt, gas_mass, gas_volume, foot, contraction, at_foot)
+    unstable = 0
+    for f in range(1, count):
+        upper, lower = at_foot[f - 1], at_top[f]
         stability[f] = gravity * (lower - upper) / (0.5 * (lower + upper)) / face_distance[f]
         unstable += lower < upper
     return unstable

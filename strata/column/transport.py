@@ -74,12 +74,13 @@ def _lagrange_slopes(nodes: Array, at: int) -> Array:
 
 
 @compiled
-def advect(values, flow, volume, weight, start, dt, edge, flux):
+def advect(values, flow, volume, weight, start, dt, gain, edge, flux):
     """Move every tracer by the upward volume flow through the inner faces for one step.
 
     ``values`` (n, m) is changed in place; ``flow`` (n + 1) [m3 s-1] is upward through the
-    faces, of which only the inner ones are used; ``edge`` and ``flux`` (n + 1, m) are
-    workspace. The flow out of a layer in one step must not exceed its volume.
+    faces, of which only the inner ones are used; ``gain`` (n, m) is what else each layer gains
+    in the step; ``edge`` and ``flux`` (n + 1, m) are workspace.  The flow out of a layer in one
+    step must not exceed its volume.
     """
     count, tracers = values.shape
     points = weight.shape[1]
@@ -126,8 +127,9 @@ def advect(values, flow, volume, weight, start, dt, edge, flux):
                 near + 0.5 * share * (rise + (1.0 - 2.0 / 3.0 * share) * bend)
             )
     for i in range(count):
+        per_volume = 1.0 / volume[i]
         for m in range(tracers):
-            values[i, m] += (flux[i + 1, m] - flux[i, m]) / volume[i]
+            values[i, m] += (flux[i + 1, m] - flux[i, m] + gain[i, m]) * per_volume
 
 
 @compiled

@@ -5,24 +5,17 @@ refreshes what is held between visits of the clock, and words what the loop coul
 """
 
 from collections.abc import Mapping, Sequence
-from dataclasses import fields
+from dataclasses import fields, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from strata.column import gases, kernel
 from strata.column.air import air_table
+from strata.column.inflows import Inflow, even_shares
 from strata.column.laws import bed_coefficient, law_of, staircase_window
 from strata.column.slow import SlowProperties, slow_properties
-from strata.column.streams import (
-    Give,
-    Source,
-    Surroundings,
-    follow,
-    plunge,
-    spread_evenly,
-    stack,
-)
+from strata.column.streams import Give, Source, Surroundings, stack
 from strata.column.supply import supply_of
 from strata.column.surface import wind_power
 from strata.column.tracers import (
@@ -98,8 +91,7 @@ class Column:
         self.start = self.inventory()
         count = self.basin.layers + 1
         self.seen = kernel.Seen(np.zeros(count), np.zeros(count), np.zeros(count))
-        self._springs = [self._spring_source(spring) for spring in lake.springs]
-        self._rivers = [self._river_source(river) for river in lake.rivers]
+        self._inflows = self._inflows_of_lake()
         self._air = air_table(lake.site)
         self.slow: SlowProperties
         self.refresh()
@@ -267,12 +259,12 @@ class Column:
             layer, tracer = np.argwhere(~np.isfinite(values))[0]
             raise self._not_a_number(layer, tracer)
         self.constants = self._carbonate_constants(values, self.pressure)
-        mass, space = self.gas_load()
+        self.gas_mass, self.gas_volume = self._gas_load(values, self.constants)
         grid = self.grid
         kernel.pair_stability(
             values,
-            mass,
-            space,
+            self.gas_mass,
+            self.gas_volume,
             grid.pressure,
             grid.distance,
             grid.physics,
@@ -300,19 +292,14 @@ class Column:
         gases.free_co2_rows(self.state.values, self.constants, self.hydrogen, co2)
         return co2
 
-    def gas_load(self) -> tuple[Array, Array]:
-        """Return mass [kg m-3] and volume [m3 m-3] of the dissolved gases of the layers."""
-        return self._gas_load(self.state.values, self.constants)
-
     def surroundings(self) -> Surroundings:
-        """Return the water a plume meets now."""
-        mass, space = self.gas_load()
+        """Return the water a plume meets, as of the last refresh."""
         return Surroundings(
             basin=self.basin,
             temperature=np.ascontiguousarray(self.values[:, TEMPERATURE]),
             salinity=np.ascontiguousarray(self.values[:, SALINITY]),
-            gas_mass=mass,
-            gas_volume=space,
+            gas_mass=self.gas_mass,
+            gas_volume=self.gas_volume,
             pressure=self.pressure,
             haline_contraction=self.lake.site.haline_contraction,
             gravity=self.gravity,
@@ -341,67 +328,48 @@ class Column:
         )
         return row[0], float(mass[0]), float(space[0])
 
-    def _spring_source(self, spring: Spring) -> tuple[Spring, Array, Source]:
-        """Return a spring with what it carries and as the source of a plume."""
-        theta = float(
-            potential_temperature(spring.temperature, self.pressure_at(spring.depth))
-        )
-        row, mass, space = self.parcel(theta, spring.salinity, spring.dissolved, spring.depth)
-        if f"spring_{spring.name}" in self.tags:
-            row[index(f"spring_{spring.name}", self.tags)] = 1.0
+    def _inflow_source(
+        self, kind: str, water: Spring | River, temperature: float, depth: float
+    ) -> tuple[Source, Array]:
+        """Return a spring or river at its mouth and what it carries, amount per second."""
+        row, mass, space = self.parcel(temperature, water.salinity, water.dissolved, depth)
+        if f"{kind}_{water.name}" in self.tags:
+            row[index(f"{kind}_{water.name}", self.tags)] = 1.0
         source = Source(
-            name=f"spring {spring.name}",
-            depth=spring.depth,
-            flow=spring.flow,
-            temperature=theta,
-            salinity=spring.salinity,
-            gas_mass=mass,
-            gas_volume=space,
-            ports=spring.ports,
-            port_diameter=spring.port_diameter,
-            port_spacing=spring.port_spacing,
-        )
-        return spring, row, source
-
-    def _spring(
-        self, spring: Spring, row: Array, source: Source, around: Surroundings
-    ) -> Give:
-        """Return a spring as it enters now: a plume from its outlet, or over its interval."""
-        if spring.spread is not None:
-            given, entrained = spread_evenly(spring, self.basin), np.zeros(self.basin.layers)
-        else:
-            path = follow(source, around, self.lake.mixing.overshoot)
-            given, entrained = path.given, path.entrained
-        return Give(kernel.SPRINGS, spring.flow, spring.flow * row, given, entrained)
-
-    def _river_source(self, river: River) -> tuple[River, Array, Source]:
-        """Return a river with what it carries and as a source at the surface."""
-        row, mass, space = self.parcel(river.temperature, river.salinity, river.dissolved, 0.0)
-        if f"river_{river.name}" in self.tags:
-            row[index(f"river_{river.name}", self.tags)] = 1.0
-        source = Source(
-            name=f"river {river.name}",
-            depth=0.0,
-            flow=river.flow,
-            temperature=river.temperature,
-            salinity=river.salinity,
+            name=f"{kind} {water.name}",
+            depth=depth,
+            flow=water.flow,
+            temperature=temperature,
+            salinity=water.salinity,
             gas_mass=mass,
             gas_volume=space,
         )
-        return river, row, source
+        return source, water.flow * row
 
-    def _river(self, river: River, row: Array, source: Source, around: Surroundings) -> Give:
-        """Return a river as it enters now: over the lake, or under to its neutral level."""
-        given, entrained = plunge(
-            source, around, self.seen.stability[1:-1], self.lake.mixing.plunge_mixing
-        )
-        return Give(kernel.RIVERS, river.flow, river.flow * row, given, entrained)
+    def _inflows_of_lake(self) -> list[Inflow]:
+        """Return all springs and rivers with what they carry."""
+        found = []
+        for spring in self.lake.springs:
+            pressure = self.pressure_at(spring.depth)
+            theta = float(potential_temperature(spring.temperature, pressure))
+            source, carried = self._inflow_source("spring", spring, theta, spring.depth)
+            source = replace(
+                source,
+                ports=spring.ports,
+                port_diameter=spring.port_diameter,
+                port_spacing=spring.port_spacing,
+            )
+            shares = None if spring.spread is None else even_shares(spring.spread, self.basin)
+            found.append(Inflow(kernel.SPRINGS, source, carried, shares))
+        for river in self.lake.rivers:
+            source, carried = self._inflow_source("river", river, river.temperature, 0.0)
+            found.append(Inflow(kernel.RIVERS, source, carried))
+        return found
 
     def natural(self, around: Surroundings) -> list[Give]:
         """Return all springs and rivers as they enter the column as it is."""
-        return [self._spring(*spring, around) for spring in self._springs] + [
-            self._river(*river, around) for river in self._rivers
-        ]
+        stability = self.seen.stability[1:-1]
+        return [inflow.enter(around, stability, self.lake.mixing) for inflow in self._inflows]
 
     def advance(
         self,

@@ -1,8 +1,8 @@
-"""Water that enters the column: springs, rivers and what plants put back.
+"""Water that enters the column: from where, by which path, and as the kernel wants it.
 
-Each is a *give*: some water with all it carries, what it takes along from the layers it passes
-as a plume, and the layers it ends in.  Takes and gives of a visit are stacked into the arrays
-of the kernel here.
+Each stream is a *give*: some water with all it carries, what it takes along from the layers it
+passes as a plume, and the layers it ends in.  Takes and gives of a visit are stacked into the
+arrays of the kernel here.
 """
 
 import math
@@ -10,14 +10,11 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import NDArray
 
-from strata.compiled import broadcast, compiled
+from strata.compiled import compiled
 from strata.errors import ComputationError
 from strata.lake.basin import Basin
-from strata.lake.site import Spring
-from strata.water.density import parcel_density
-from strata.water.intrusion import INTRUSION_COEFFICIENT, layer_shares
 from strata.water.plume import follow_plume
 
 Array = NDArray[np.float64]
@@ -115,74 +112,6 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
         )
     above = float(given[around.basin.depth < source.depth].sum())
     return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code], above)
-
-
-def spread_evenly(spring: Spring, basin: Basin) -> Array:
-    """Return the share of a spring that each layer of its interval gets, even over depth."""
-    assert spring.spread is not None
-    share = basin.overlap(*spring.spread) * basin.thickness
-    return share / share.sum()
-
-
-def plunge(
-    source: Source, around: Surroundings, stability: Array, mixing: float
-) -> tuple[Array, Array]:
-    """Return the shares in which a river ends in the layers, and what it takes along [m3 s-1].
-
-    A river lighter than the lake's surface spreads over it, in the top layer.  A heavier one
-    plunges, takes along ``mixing`` times its flow from the top layer as it does (0.1 to 1 and
-    more after Akiyama & Stefan 1984, J. Hydraul. Eng. 110:484-499), and follows the bed as far
-    as the first layer that is heavier than the mixture, over which it spreads as an intrusion.
-
-    Parameters
-    ----------
-    source : Source
-        The river at the surface.
-    around : Surroundings
-        The lake.
-    stability : ndarray, shape (n - 1,)
-        Buoyancy frequency squared at the inner faces [s-2].
-    mixing : float
-        Flow taken along over that of the river.
-    """
-    count = len(around.temperature)
-    given, entrained = np.zeros(count), np.zeros(count)
-
-    def density(theta: ArrayLike, salt: ArrayLike, mass: ArrayLike, space: ArrayLike) -> Array:
-        return np.asarray(
-            broadcast(parcel_density)(
-                theta, salt, around.pressure, mass, space, around.haline_contraction
-            )
-        )
-
-    lake = density(around.temperature, around.salinity, around.gas_mass, around.gas_volume)
-    own = (source.temperature, source.salinity, source.gas_mass, source.gas_volume)
-    if density(*own)[0] <= lake[0] or source.flow <= 0.0:
-        given[0] = 1.0
-        return given, entrained
-    top = (
-        around.temperature[0],
-        around.salinity[0],
-        around.gas_mass[0],
-        around.gas_volume[0],
-    )
-    share = mixing / (1.0 + mixing)
-    mixture = [part + share * (there - part) for part, there in zip(own, top, strict=True)]
-    heavier = np.flatnonzero(lake >= density(*mixture))
-    entrained[0] = mixing * source.flow
-    if len(heavier) == 0:
-        given[-1] = 1.0
-        return given, entrained
-    flow = (1.0 + mixing) * source.flow
-    level = float(around.basin.faces[heavier[0]])
-    given = layer_shares(
-        around.basin.faces,
-        np.ascontiguousarray(stability),
-        level,
-        flow,
-        INTRUSION_COEFFICIENT,
-    )
-    return given, entrained
 
 
 @dataclass(frozen=True)

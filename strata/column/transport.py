@@ -78,9 +78,9 @@ def advect(values, flow, volume, weight, start, dt, gain, edge, flux):
     """Move every tracer by the upward volume flow through the inner faces for one step.
 
     ``values`` (n, m) is changed in place; ``flow`` (n + 1) [m3 s-1] is upward through the
-    faces, of which only the inner ones are used; ``gain`` (n, m) is what else each layer gains
-    in the step; ``edge`` and ``flux`` (n + 1, m) are workspace.  The flow out of a layer in one
-    step must not exceed its volume.
+    faces, of which only the inner ones are used; ``gain`` (n, m) is the amount that each layer
+    gains besides; ``edge`` and ``flux`` (n + 1, m) are workspace.  The flow out of a layer in
+    one step must not exceed its volume.
     """
     count, tracers = values.shape
     points = weight.shape[1]

@@ -5,7 +5,6 @@ all else the amount added.  The kernel withdraws the actual water and applies th
 so what is produced is exactly what was withdrawn and added less what was returned.
 """
 
-import re
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date
@@ -32,9 +31,6 @@ Array = NDArray[np.float64]
 RETURN_TAG = "return_water"
 #: Tracers of which a share goes back; of the others an amount is added.
 _BY_SHARE = ("DIC", "CH4", "N2", "O2", "H2S")
-
-
-_NUMBER = re.compile(r"\d+(\.\d+)?")
 
 
 @dataclass(frozen=True)
@@ -71,7 +67,7 @@ class Fleet:
             plant.name: {"recovered_CH4": 0.0, "vented_CH4_total": 0.0}
             for plant in self.plants
         }
-        self._told: dict[str, str] = {}  # a warning without its numbers -> as first given
+        self._told: dict[str, str] = {}  # plant and kind of finding -> its first text
 
     def dates(self, begin: date, end: date) -> list[date]:
         """Return every day between two on which a plant changes load or settings."""
@@ -82,6 +78,7 @@ class Fleet:
         self.running = []
         takes: list[Array] = []
         gives: list[Give] = []
+        reference: list[Array] = []
         for planned in self.plants:
             load = timetable.load_factor(planned, day)
             if load <= 0.0:
@@ -91,7 +88,11 @@ class Fleet:
             if plant.wash is not None:
                 intake = [Intake(plant.wash.water_depth, 1.0)]
                 draws.append(_draw(column, intake, load * plant.wash.water_flow))
-            feeds = [stream_of(draw, column) for draw in draws]
+            means = [draw @ column.values / draw.sum() for draw in draws]
+            feeds = [
+                stream_of(mean, float(draw.sum()))
+                for mean, draw in zip(means, draws, strict=True)
+            ]
             if not timetable.runs_on_feed(plant, feeds[0].of("CH4")):
                 continue
             operation = operate(
@@ -102,10 +103,11 @@ class Fleet:
             self._put_back(running, feeds, column, around)
             takes += draws
             gives += running.gives
+            reference += means
             self.running.append(running)
+            self._tell(plant.name, day, _surfacing(running, column))
             if day.month == 1 or timetable.set_anew(planned, day):
-                self._warn(plant.name, day, operation.warnings)
-        reference = [draw @ column.values / draw.sum() for draw in takes]
+                self._tell(plant.name, day, operation.findings)
         return Working(
             takes, gives, np.array(reference).reshape(len(takes), len(column.tracers))
         )
@@ -142,11 +144,10 @@ class Fleet:
             running.paths.append(path)
             running.excess.append(excess_density(source, around))
 
-    def _warn(self, name: str, day: date, warnings: Sequence[str]) -> None:
-        """Keep each kind of warning of a plant once, with the numbers of its first day."""
-        for warning in warnings:
-            kind = f"{name}: {_NUMBER.sub('', warning)}"
-            self._told.setdefault(kind, f"{name}, from {day}: {warning}")
+    def _tell(self, name: str, day: date, findings: Mapping[str, str]) -> None:
+        """Keep each kind of finding of a plant once, with the numbers of its first day."""
+        for kind, text in findings.items():
+            self._told.setdefault(f"{name}: {kind}", f"{name}, from {day}: {text}")
 
     @property
     def warnings(self) -> tuple[str, ...]:
@@ -263,16 +264,30 @@ def _draw(column: Column, intakes: Iterable[Intake], flow: float) -> Array:
     return flow * plant_weights(column.basin.faces, column.seen.stability[1:-1], intakes, flow)
 
 
-def stream_of(draw: Array, column: Column) -> WaterStream:
-    """Return water drawn from the layers [m3 s-1 each] as a stream."""
-    flow = float(draw.sum())
-    mean = draw @ column.values / flow
+def stream_of(mean: Array, flow: float) -> WaterStream:
+    """Return water of given tracers (m,) that flows [m3 s-1] as a stream."""
     dissolved = {
         name: float(mean[k])
         for k, name in enumerate(TRACERS)
         if k not in (TEMPERATURE, SALINITY)
     }
     return WaterStream(flow, float(mean[TEMPERATURE]), float(mean[SALINITY]), dissolved)
+
+
+def _surfacing(running: _Running, column: Column) -> dict[str, str]:
+    """Return which outlets send water into the surface layer now, by their number."""
+    mixed = float(column.state.mixed_depth[0])
+    above = column.basin.faces[1:] <= mixed
+    found = {}
+    for number, (path, give) in enumerate(zip(running.paths, running.gives, strict=True), 1):
+        share = float(path.given[above].sum())
+        if share > 0.0:
+            found[f"surfacing at outlet {number}"] = (
+                f"{100 * share:.0f} % of the water of outlet {number} ({give.water:.3g} m3/s,"
+                f" diluted {path.dilution:.1f} times) ends in the surface layer, mixed to"
+                f" {mixed:.0f} m"
+            )
+    return found
 
 
 def factors(

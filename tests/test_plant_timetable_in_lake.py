@@ -110,3 +110,13 @@ def test_what_was_delivered_is_what_the_plants_made_day_by_day(run):
     # a month's record stands for the month: seasons and changes fall on its first day
     assert float(run["methane_recovered"][-1]) == pytest.approx(float(made @ days), rel=0.02)
     assert float(np.abs(run["ledger_error"]).max()) < 1e-10
+
+
+def test_water_that_ends_in_the_surface_layer_is_a_finding_told_once(sound_lake):
+    shallow = Plant("shallow", 60.0, 2.0, (Stage(1e5),), Return(3.0), date(2027, 1, 1))
+    deep = Plant("deep", 345.0, 2.0, (Stage(1e5),), Return(275.0), date(2027, 1, 1))
+    told = strata.project(sound_lake, Plan("two", (shallow, deep)), years=0.5, step_days=5)
+    lines = [line for line in told.attrs["warnings"].splitlines() if "surface layer" in line]
+    assert len(lines) == 1
+    assert lines[0].startswith("shallow, from 2027-")
+    assert "of the water of outlet 1" in lines[0]

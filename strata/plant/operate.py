@@ -57,12 +57,17 @@ class Operation:
     ]  # W by name; "electric" is made, "net" is left, all else is used
     balance: Mapping[str, float]  # element -> (in - out) / throughput
     streams: Mapping[str, WaterStream | GasStream] = field(default_factory=dict)
-    look: Callable[[], tuple[str, ...]] = tuple  # for what a user should act on
+    look: Callable[[], dict[str, str]] = dict  # for what a user should act on
+
+    @property
+    def findings(self) -> dict[str, str]:
+        """Return what a user should act on by its kind; worked out when it is asked for."""
+        return self.look()
 
     @property
     def warnings(self) -> tuple[str, ...]:
-        """Return what a user should act on; worked out when it is asked for."""
-        return self.look()
+        """Return what a user should act on."""
+        return tuple(self.findings.values())
 
     @property
     def recovery(self) -> float:
@@ -142,7 +147,7 @@ def operate(
             feed, limed.water, gases, wash_feed, washed_water, water, product, vented
         ),
     )
-    return replace(operation, look=partial(_warnings, plant, limed, feed, operation, site))
+    return replace(operation, look=partial(_findings, plant, limed, feed, operation, site))
 
 
 def _streams(
@@ -318,30 +323,30 @@ def _check(plant: Plant, balance: Mapping[str, float]) -> None:
             )
 
 
-def _warnings(
+def _findings(
     plant: Plant, limed: LimedStream, feed: WaterStream, operation: Operation, site: Site
-) -> tuple[str, ...]:
-    """Return what a user should act on."""
-    found = []
+) -> dict[str, str]:
+    """Return what a user should act on, by its kind."""
+    found = {}
     if limed.overdosed:
-        found.append(
+        found["lime"] = (
             f"lime is over-dosed: {limed.lime / feed.flow:.1f} mol/m3 exceed the free CO2"
             f" of the feed; the limed water has pH {limed.ph:.1f}"
         )
     scale = _calcite_saturation(operation.returned, site)
     if scale > SCALING:
-        found.append(
+        found["scale"] = (
             f"return water is {10.0**scale:.0f} times saturated with calcite: it will scale"
         )
-    for outlet, water in outlets(plant, operation):
+    for number, (outlet, water) in enumerate(outlets(plant, operation), 1):
         around = pressure_at(outlet.depth, site)
         inside = gas_pressure(water, site, around)
         if inside > around:
-            found.append(
+            found[f"gas at outlet {number}"] = (
                 f"gas does not stay dissolved in the water returned at {outlet.depth:g} m:"
                 f" its pressure is {inside / 1e5:.1f} bar against {around / 1e5:.1f} bar there"
             )
-    return tuple(found)
+    return found
 
 
 def _calcite_saturation(water: WaterStream, site: Site) -> float:

@@ -99,7 +99,7 @@ def setting_of(
 
     def drawn(intakes: Sequence[Intake], flow: float) -> WaterStream:
         weights = plant_weights(now.basin.faces, now.seen.stability[1:-1], intakes, flow)
-        return stream_of(flow * weights, now)
+        return stream_of(weights @ now.values, flow)
 
     wash = chosen.wash
     wash_feed = None

@@ -20,6 +20,13 @@ water_depth_m = 60
 """
 
 
+RISER = """
+[plant.riser]
+bore_m = 0.8
+pipes = 4
+"""
+
+
 def run(*arguments):
     return CliRunner().invoke(group, ["separate", *map(str, arguments)])
 
@@ -60,14 +67,67 @@ def test_a_script_gets_every_number_with_its_unit(folder):
     assert numbers["caution"] == CAUTION
 
 
+def risen(folder, pressure):
+    """Return text and numbers of the plant with a riser to a separator at a pressure [bar]."""
+    folder.spoil(folder.plan, "pressure_bar = 2.0", f"pressure_bar = {pressure}")
+    folder.plan.write_text(folder.plan.read_text() + RISER)
+    text = run(folder.lake, folder.plan, "-o", "out").stdout
+    numbers = json.loads(Path("out/separate.json").read_text())
+    return " ".join(text.split()), numbers["plants"][0]
+
+
+def test_a_riser_that_lifts_itself_is_told_with_its_numbers(folder):
+    text, plant = risen(folder, 0.5)
+    riser = plant["riser"]
+    assert "test plan, north: riser, 4 pipes of 0.8 m, with today's feed." in text
+    assert riser["self_lifted_m3_s"] > 6.0 > 0.0 > riser["pump_pressure_bar"]
+    assert (
+        f"Its gas alone lifts {riser['self_lifted_m3_s']:.2f} m³/s up to the 0.5 bar" in text
+    )
+    assert f"no pump runs; {-riser['pump_pressure_bar']:.2f} bar is throttled" in text
+    assert f"first bubble at m {riser['bubble_depth_m']:.1f}" in text
+    assert riser["pump_power_MW"] == 0.0
+    along = riser["along"]
+    assert along["depth_m"][0] == 345.0
+    assert along["depth_m"][-1] == pytest.approx(0.0, abs=1e-6)
+    assert along["pressure_Pa"][-1] == pytest.approx(0.5e5)
+    assert along["void"][-1] == riser["top_void"] > along["void"][0] == 0.0
+    # what the table shows last is the top of the pipe
+    shown = f"0.0 0.50 {riser['top_void']:.3f} {riser['top_water_velocity_m_s']:.2f}"
+    assert shown in text
+
+
+def test_a_riser_that_cannot_lift_itself_is_told_in_plain_words(folder):
+    text, plant = risen(folder, 4.0)
+    riser = plant["riser"]
+    assert riser["self_lifted_m3_s"] == 0.0
+    assert (
+        "It does not lift itself: without a pump no water comes up to the 4 bar of the first"
+        f" separator. For the 6 m³/s asked for a pump adds {riser['pump_pressure_bar']:.2f} bar,"
+    ) in text
+    assert (
+        f"To start it from a still pipe takes {riser['startup_pressure_bar']:.2f} bar" in text
+    )
+    # the plant's pumps do that and, with a last stage above the air, nothing else
+    assert plant["power_W"]["pump"] / 1e6 == pytest.approx(riser["pump_power_MW"], rel=2e-3)
+
+
+def test_a_plant_without_a_riser_has_none_to_show(folder):
+    assert "riser" not in run(folder.lake, folder.plan, "-o", "out").stdout
+    numbers = json.loads(Path("out/separate.json").read_text())
+    assert numbers["plants"][0]["riser"] is None
+    assert not Path("out/north-riser.png").exists()
+
+
 def test_figures_sweeps_and_numbers_are_written_and_may_be_written_again(folder):
     washed(folder)
+    folder.plan.write_text(folder.plan.read_text() + RISER)
     for _ in range(2):
         result = run(folder.lake, folder.plan, "-o", "out")
         assert result.exit_code == 0, result.stderr
     swept = ("lime", "pressure", "two-pressures", "wash")
     names = {f"north-{name}.{kind}" for name in swept for kind in ("png", "nc")}
-    names |= {"north-diagram.png", "north-outlets.nc", "separate.json"}
+    names |= {"north-diagram.png", "north-riser.png", "north-outlets.nc", "separate.json"}
     assert {path.name for path in Path("out").iterdir()} == names
     for path in Path("out").iterdir():
         assert CAUTION.encode() in path.read_bytes()

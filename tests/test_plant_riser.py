@@ -129,3 +129,17 @@ def test_a_higher_separator_lowers_the_flow_and_a_wider_pipe_raises_it():
 
 def test_pressure_in_the_separator_holds_the_flow_back():
     assert nyos(outlet=2e5).flow < nyos(outlet=1.5e5).flow < nyos().flow
+
+
+def test_gas_that_comes_out_below_the_intake_is_in_the_pipe_from_its_foot():
+    # held back at the foot to well below the pressure of the first bubble, 11.6 bar of CO2
+    foot = AIR + 9.78 * 1000.0 * 60.0
+    pipe = lift(PIPE, 60.0, 25.3, 1.0, GASES, AIR, foot, 0.03, gravity=9.78)
+    assert pipe.bubble_pressure > foot
+    assert pipe.bubble_depth == 60.0
+    assert pipe.depth[0] == 60.0
+    assert np.all(np.diff(pipe.depth) < 0.0)
+    assert np.all(np.diff(pipe.pressure) < 0.0)
+    assert 0.0 < pipe.void[0] < pipe.void[1]
+    assert pipe.pressure[0] < pipe.bubble_pressure
+    assert pipe.pump_pressure < 0.0

@@ -12,7 +12,7 @@ from strata import results
 from strata.plant.account import Account
 from strata.plant.operate import operate
 from strata.plant.plan import Intake, Lime, Plan, Return, Riser, Stage, Wash
-from strata.report import plant_tables, plot, sweeps
+from strata.report import plant_tables, plot, riser, sweeps
 from strata.report.diagram import diagram
 from strata.studies.today import study_plant
 from tests.plant_cases import DEEP, SHALLOW, SITE, simple_plant
@@ -160,3 +160,48 @@ def test_the_depth_at_which_return_water_spreads_is_drawn_with_the_main_gradient
     np.testing.assert_array_equal(gradient.get_ydata(), run["gradient_depth"])
     spread = ax.lines[0].get_ydata()
     np.testing.assert_allclose(spread[np.isfinite(spread)], 203.0)  # as the record has it
+
+
+def test_a_riser_is_drawn_from_its_foot_to_its_top_with_its_first_bubble():
+    flow = ACCOUNT.riser()
+    pressure, void, velocity = riser.figure(ACCOUNT).axes
+    pipe, lake = pressure.lines[:2]
+    np.testing.assert_allclose(pipe.get_xdata(), flow.pressure / 1e5)
+    assert (lake.get_xdata()[0], lake.get_ydata()[0]) == (flow.foot_pressure / 1e5, 345.0)
+    np.testing.assert_allclose(void.lines[0].get_xdata(), flow.void)
+    water, gas = velocity.lines[:2]
+    assert np.isfinite(water.get_xdata()).all()
+    np.testing.assert_array_equal(np.isfinite(gas.get_xdata()), flow.void > 0.0)
+    for ax in (pressure, void, velocity):
+        assert ax.lines[-1].get_ydata()[0] == flow.bubble_depth
+        assert ax.yaxis_inverted()
+        assert "[" in ax.get_xlabel()
+    (name,) = void.texts
+    assert name.get_text() == f"first bubble, {flow.bubble_depth:.0f} m"
+
+
+def test_the_table_of_a_riser_is_that_of_its_flow_and_its_pump_that_of_the_plant():
+    facts, along = riser.tables("full", ACCOUNT)
+    found, flow = ACCOUNT.riser_figures(), ACCOUNT.riser()
+    shown = {row[0]: row[2] for row in facts.rows}
+    assert shown["water asked for"] == f"{DEEP.flow:.2f}"
+    assert shown["first bubble at"] == f"{flow.bubble_depth:.1f}"
+    assert float(along.rows[0][0]) == 345.0
+    assert along.rows[0][-1] == "–"  # no gas at the foot
+    assert float(along.rows[1][0]) == pytest.approx(flow.bubble_depth, abs=0.06)
+    assert float(along.rows[1][1]) == pytest.approx(found["bubble_pressure_bar"], abs=0.006)
+    assert float(along.rows[-1][2]) == pytest.approx(flow.outlet_void, abs=6e-4)
+
+
+def test_words_of_a_riser_follow_from_its_flow():
+    for stage, flow, part in (
+        (4e5, DEEP.flow, "does not lift itself: without a pump no water comes up to the 4"),
+        (0.5e5, 0.5 * DEEP.flow, "no pump runs"),
+    ):
+        plant = replace(FULL, stages=(Stage(stage),), wash=None)
+        run = operate(plant, replace(DEEP, flow=flow), None, SITE)
+        account = Account(plant, run, SITE)
+        assert part in riser.words(account)
+        assert (account.riser().self_lifted == 0.0) == ("does not lift" in part)
+    plain = replace(FULL, riser=None)
+    assert riser.tables("plain", Account(plain, ACCOUNT.operation, SITE)) == []

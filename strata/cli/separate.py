@@ -32,11 +32,12 @@ def command(
 ) -> None:
     """Show what the plants of PLAN make of the water of LAKE today, and vary their settings.
 
-    For each plant: product, power and what goes to the air; every stream; one separator at
-    any pressure, CO2 left free beside CO2 bound as calcite, with the best pressure for
-    recovery, heating value, net energy and density of the return water; two separators at any
-    pair of pressures; the amount of wash water and of lime; and where the returned water goes,
-    also a kelvin cooler or warmer and from fewer or more ports.
+    For each plant: product, power and what goes to the air; every stream; how its riser
+    brings the water up, by its gas or with a pump; one separator at any pressure, CO2 left
+    free beside CO2 bound as calcite, with the best pressure for recovery, heating value, net
+    energy and density of the return water; two separators at any pair of pressures; the
+    amount of wash water and of lime; and where the returned water goes, also a kelvin cooler
+    or warmer and from fewer or more ports.
 
     \b
     Example:
@@ -114,9 +115,26 @@ def _numbers(study: "PlantStudy") -> dict[str, Any]:
         "streams": account.streams(),
         "power_W": dict(account.operation.power),
         "balance": dict(account.operation.balance),
+        "riser": _riser(study),
         "warnings": list(account.operation.warnings),
         "sweeps": {name.replace(" ", "_"): _sweep(one) for name, one in study.sweeps.items()},
     }
+
+
+def _riser(study: "PlantStudy") -> dict[str, Any] | None:
+    """Return how the riser of a plant works and what goes on along it; None without one."""
+    account = study.account
+    flow = account.riser()
+    if flow is None:
+        return None
+    along = {
+        "depth_m": flow.depth,
+        "pressure_Pa": flow.pressure,
+        "void": flow.void,
+        "water_velocity_m_s": flow.water_velocity,
+        "gas_velocity_m_s": flow.gas_velocity,
+    }
+    return {**account.riser_figures(), "choked": flow.choked, "along": along}
 
 
 def _sweep(sweep: "xr.Dataset") -> dict[str, Any]:

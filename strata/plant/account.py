@@ -15,8 +15,9 @@ from strata.gas import compressibility_factor, fugacity_coefficients, speciate
 from strata.lake.site import Site
 from strata.plant import power
 from strata.plant.chemistry import density_of, free_gases
-from strata.plant.operate import Operation, pressure_at
+from strata.plant.operate import Operation, lift_of, pressure_at
 from strata.plant.plan import Plant
+from strata.plant.riser import RiserFlow
 from strata.plant.streams import NORMAL_PRESSURE, GasStream, WaterStream
 from strata.species import LAKE_GASES, SPECIES, VAPOUR
 from strata.water.transport import vapour_pressure_at
@@ -42,6 +43,20 @@ class Account:
     def figures(self) -> dict[str, float]:
         """Return what the plant makes, uses and lets go; see :func:`figures`."""
         return figures(self.operation)
+
+    def riser(self) -> RiserFlow | None:
+        """Return how the riser brings up the feed; None where the plant has none."""
+        if self.plant.riser is None:
+            return None
+        streams = self.operation.streams
+        water = streams.get("limed feed", streams["feed"])
+        assert isinstance(water, WaterStream)
+        return lift_of(self.plant, water, self.site)
+
+    def riser_figures(self) -> dict[str, float]:
+        """Return how the riser works; see :func:`riser_figures`.  Nothing without one."""
+        flow = self.riser()
+        return {} if flow is None else riser_figures(flow, self.plant)
 
 
 def stream_rows(plant: Plant, operation: Operation, site: Site) -> list[Row]:
@@ -178,6 +193,31 @@ def figures(operation: Operation) -> dict[str, float]:
         "CO2_equivalent_t_a": (burnt + vented + kiln) * year / 1e3,
         "lime_t_a": operation.lime * LIME_MASS * year / 1e3,
         "calcite_t_a": operation.solids * CALCITE_MASS * year / 1e3,
+    }
+
+
+def riser_figures(flow: RiserFlow, plant: Plant) -> dict[str, float]:
+    """Return how a riser works, by names with units.
+
+    A pressure of the pump below nil is throttled away.  Start-up: what a pump must add to a
+    still pipe until gas comes out and helps.  The first bubble lies at nil where no gas comes
+    out on the way.
+    """
+    watts = power.pump_power(flow.flow, flow.pump_pressure, plant.pump_efficiency)
+    return {
+        "flow_m3_s": flow.flow,
+        "self_lifted_m3_s": flow.self_lifted,
+        "pump_pressure_bar": flow.pump_pressure / 1e5,
+        "pump_power_MW": watts / 1e6,
+        "startup_pressure_bar": flow.startup_pressure / 1e5,
+        "bubble_depth_m": flow.bubble_depth,
+        "bubble_pressure_bar": flow.bubble_pressure / 1e5,
+        "foot_velocity_m_s": float(flow.water_velocity[0]),
+        "top_pressure_bar": flow.outlet_pressure / 1e5,
+        "top_void": flow.outlet_void,
+        "top_gas_share_of_flow": flow.outlet_gas_share,
+        "top_water_velocity_m_s": float(flow.water_velocity[-1]),
+        "top_gas_velocity_m_s": float(flow.gas_velocity[-1]),
     }
 
 

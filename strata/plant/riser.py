@@ -59,6 +59,7 @@ class RiserFlow:
     pump_pressure: (
         float  # Pa to be added at the foot for this flow; negative is throttled away
     )
+    foot_pressure: float  # Pa in the lake at the intake
     choked: bool  # whether the outflow is critical
     outlet_pressure: float  # Pa
     outlet_void: float  # share of the section that is gas
@@ -412,14 +413,15 @@ def lift(
         )
     speed = own if flow is None else flow / section
     course = _course(speed, train)
-    per_metre, _ = _single_phase(speed, train)
     end = course.end
     below = length - float(course.height[end])
     gas = speed * train.gas_volume[end]
+    depths, pressure, void, of_water, of_gas = _profile(speed, train, course, depth)
     return RiserFlow(
         flow=speed * section,
         self_lifted=own * section,
         pump_pressure=0.0 if flow is None else _pump_pressure(speed, train),
+        foot_pressure=foot_pressure,
         choked=course.choked,
         outlet_pressure=float(train.pressure[end]),
         outlet_void=float(course.void[end]),
@@ -427,13 +429,30 @@ def lift(
         bubble_pressure=bubble,
         bubble_depth=max(0.0, depth - max(below, 0.0)) if bubble > outlet_pressure else 0.0,
         startup_pressure=_startup_pressure(train, bubble, temperature, salinity, gases),
-        depth=np.concatenate([[depth], depth - below - course.height[: end + 1]]),
-        pressure=np.concatenate(
-            [[train.pressure[0] + max(below, 0.0) * per_metre], train.pressure[: end + 1]]
-        ),
-        void=np.concatenate([[0.0], course.void[: end + 1]]),
-        water_velocity=np.concatenate([[speed], course.water_speed[: end + 1]]),
-        gas_velocity=np.concatenate([[0.0], course.gas_speed[: end + 1]]),
+        depth=depths,
+        pressure=pressure,
+        void=void,
+        water_velocity=of_water,
+        gas_velocity=of_gas,
+    )
+
+
+def _profile(speed: float, train: _Train, course: _Course, depth: float) -> tuple[Array, ...]:
+    """Return depth, pressure, void, velocities of water and gas from the foot to the top."""
+    reached = slice(course.end + 1)
+    height = course.height[reached]
+    columns = [train.pressure, course.void, course.water_speed, course.gas_speed]
+    rows = [column[reached] for column in columns]
+    below = train.length - float(height[-1])  # of the pipe full of water
+    if below >= 0.0:
+        per_metre, _ = _single_phase(speed, train)
+        foot = [train.pressure[0] + below * per_metre, 0.0, speed, 0.0]
+    else:  # gas comes out below the intake already: only part of the course is in the pipe
+        foot = [float(np.interp(-below, height, row)) for row in rows]
+    inside = below + height > 0.0
+    depths = np.concatenate([[depth], depth - below - height[inside]])
+    return depths, *(
+        np.concatenate([[first], row[inside]]) for first, row in zip(foot, rows, strict=True)
     )
 
 

@@ -21,7 +21,7 @@ from strata.lake.site import Lake
 from strata.limits import Limits, Verdict
 from strata.plant.account import Account
 from strata.plant.plan import Plan
-from strata.report import blocks, figures, plant_tables, sweeps, words
+from strata.report import blocks, figures, plant_tables, riser, sweeps, words
 from strata.report.diagram import diagram
 from strata.results import replacing
 
@@ -201,7 +201,11 @@ def _of_plant(name: str, account: Account, baseline: xr.Dataset) -> Picture:
         words.diagram_caption(name, account),
         "Numbers stand for the streams listed below the drawing; solid is water, dashed is "
         "gas; pipes end at their true depths.",
-        [plant_tables.figures(name, account), *plant_tables.streams(name, account)],
+        [
+            plant_tables.figures(name, account),
+            *plant_tables.streams(name, account),
+            *riser.tables(name, account),
+        ],
     )
 
 

@@ -14,6 +14,7 @@ from matplotlib.figure import Figure
 from strata import __version__
 from strata.caution import CAUTION
 from strata.plant.account import Account
+from strata.report import riser
 from strata.report import sweeps as drawn
 from strata.report.diagram import diagram
 from strata.report.figures import house_style
@@ -23,12 +24,13 @@ _DPI = 150
 
 
 def file_names(account: Account, folder: Path) -> dict[str, Path]:
-    """Return the files of a plant: kind ("diagram", "pressure", ...) and suffix -> path."""
+    """Return the files of a plant: kind ("diagram", "riser", ...) and suffix -> path."""
     stem = re.sub(r"[^a-z0-9]+", "-", account.plant.name.lower()).strip("-") or "plant"
     swept = ["pressure", "two pressures", "lime"]
     if account.plant.wash is not None:
         swept.append("wash")
-    kinds = [("diagram", "png"), *((name, "png") for name in swept)]
+    alone = ["diagram"] if account.plant.riser is None else ["diagram", "riser"]
+    kinds = [(name, "png") for name in (*alone, *swept)]
     kinds += [(name, "nc") for name in (*swept, "outlets")]
     return {
         f"{kind}.{suffix}": folder / f"{stem}-{kind.replace(' ', '-')}.{suffix}"
@@ -71,6 +73,8 @@ def write(
             "two pressures.png": drawn.two_pressures(sweeps["two pressures"], account),
             "lime.png": drawn.lime(sweeps["lime"], account),
         }
+        if account.plant.riser is not None:
+            figures["riser.png"] = riser.figure(account)
         if "wash" in sweeps:
             figures["wash.png"] = drawn.wash(sweeps["wash"], account)
         for name, figure in figures.items():

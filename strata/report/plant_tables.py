@@ -10,6 +10,7 @@ from strata.constants import GAS_CONSTANT, ZERO_CELSIUS
 from strata.plant.account import Account
 from strata.plant.power import METHANE_WARMING
 from strata.plant.streams import NORMAL_PRESSURE
+from strata.report import riser
 from strata.report.blocks import Table
 from strata.report.plot import calendar_years, record_of
 from strata.report.tables import aligned, digits
@@ -331,7 +332,8 @@ def of_study(name: str, account: Account, sweeps: Mapping[str, xr.Dataset]) -> l
     if "wash" in sweeps:
         tables.append(by_wash(sweeps["wash"]))
     tables += [by_lime(sweeps["lime"]), by_outlet(sweeps["outlets"])]
-    return [figures(name, account), *streams(name, account), *tables]
+    of_plant = [figures(name, account), *streams(name, account), *riser.tables(name, account)]
+    return [*of_plant, *tables]
 
 
 def text(table: Table) -> str:

@@ -35,7 +35,7 @@ TAIL = """\
   on: after a step they are warmer by half of what a step brings, q dt / (2 rho c h).
 - **A saw-tooth under the open surface** where nothing at all mixes: 3 % of the step between
   two layers, some 15 layers deep. Any diffusivity of a lake removes it.
-- **The staircase by pairs of layers** (no `staircase_window_m`) is not independent of layers
+- **The staircase by pairs of layers** (`staircase_window_m` = 0) is not independent of layers
   under 1 m: the published law makes steps of the size of the layers where its density ratio is
   small. A window of some ten steps makes it independent, as above.
 """

@@ -316,7 +316,7 @@ def lifting(layers=200, years=5.0):
 # A staircase ------------------------------------------------------------------------------
 
 
-def staircase(layer, years=10.0, window=7.0):
+def staircase(layer, years=10.0, window=None):
     """Return the mean heat flux through the middle of a gradient with a staircase [W m-2].
 
     Warm salty water under cool fresh, density ratio 3.3, the gradient 20 m thick; nothing but

@@ -95,11 +95,14 @@ def test_a_staircase_passes_the_same_heat_through_layers_of_any_thickness():
 
 
 def test_the_window_of_a_staircase_is_the_pair_of_layers_where_it_is_thinner():
-    window, reach = staircase_window(BASIN, 0.0)
+    mixing = Mixing(1e-9, 1e-9, 1e-6, 0.7, staircase_window=0.0)
+    window, reach = staircase_window(BASIN, mixing)
     at = BASIN.depth[window[1:-1]] + reach[1:-1, :2] * np.diff(BASIN.depth)[window[1:-1]]
     np.testing.assert_allclose(at[:, 0], BASIN.depth[:-1])
     np.testing.assert_allclose(at[:, 1], BASIN.depth[1:])
-    window, reach = staircase_window(BASIN, 10.0)
+    # where the site gives none, ten steps
+    mixing = Mixing(1e-9, 1e-9, 1e-6, 1.0)
+    window, reach = staircase_window(BASIN, mixing)
     at = BASIN.depth[window] + reach[:, :2] * np.diff(BASIN.depth)[window]
     np.testing.assert_allclose(at[10:40], BASIN.faces[10:40, None] + [-5.0, 5.0])
     np.testing.assert_allclose(at[:, 1] - at[:, 0], reach[:, 2])

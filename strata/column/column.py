@@ -212,7 +212,7 @@ class Column:
         distance = np.concatenate([[1.0], np.diff(basin.depth), [1.0]])
         mixing, rates = lake.mixing, lake.reactions
         law = law_of(mixing, basin)
-        window, reach = staircase_window(basin, mixing.staircase_window)
+        window, reach = staircase_window(basin, mixing)
         return kernel.Grid(
             volume=basin.volume,
             area=basin.area,

@@ -28,6 +28,8 @@ Array = NDArray[np.float64]
 #: Names of the laws.
 LAWS = ("gargett", "hondzo-stefan", "given")
 MIXING_EFFICIENCY = 0.2
+#: Steps of a staircase over which its gradients are told.
+STEPS_IN_WINDOW = 10.0
 AREA_COEFFICIENT, AREA_POWER, STABILITY_POWER = 8.17e-8, 0.56, 0.43  # m2/s, km2, s-2
 
 
@@ -73,12 +75,13 @@ def bed_coefficient(mixing: Mixing, basin: Basin, density: float) -> Array:
     return np.asarray(MIXING_EFFICIENCY * mixing.bed_dissipation * slope / density)
 
 
-def staircase_window(basin: Basin, window: float) -> tuple[NDArray[np.int64], Array]:
+def staircase_window(basin: Basin, mixing: Mixing) -> tuple[NDArray[np.int64], Array]:
     """Return where the mean gradients about each face are told from.
 
     The ends of the window lie half of it over and under the face, between the middles of
     layers or, near surface and floor, at the last of them; a window thinner than the layers is
-    the pair of layers at the face.
+    the pair of layers at the face.  Where the site gives none it holds ten steps of its
+    staircase, so that the flux does not hang on the layers.
 
     Returns
     -------
@@ -87,6 +90,9 @@ def staircase_window(basin: Basin, window: float) -> tuple[NDArray[np.int64], Ar
     reach : ndarray, shape (n + 1, 3)
         Shares of the way from there to the next layer, and the span between the ends [m].
     """
+    window = mixing.staircase_window
+    if window is None:
+        window = STEPS_IN_WINDOW * mixing.staircase_step
     middle, last = basin.depth, basin.layers - 2
     pair = np.concatenate([[0.0], np.diff(middle), [0.0]])
     inside = np.clip(basin.faces, middle[0], middle[-1])

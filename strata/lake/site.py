@@ -156,7 +156,8 @@ class Mixing:
     given_depth: Array | None = None  # m, of a given profile
     given: Array | None = None  # m2/s, a given profile; one value: the same everywhere
     bed_dissipation: float = 0.0  # W per m2 of bed, power that currents lose there
-    staircase_window: float = 0.0  # m, over which its gradients are told; 0: a pair of layers
+    #: m, height over which its gradients are told; 0: a pair of layers; None: ten steps
+    staircase_window: float | None = None
     plunge_mixing: float = 0.5  # m3 of surface water that a plunging river takes along per m3
     overshoot: float = 1.0  # times the laboratory's entrainment in overshoot (Baines 1975)
 

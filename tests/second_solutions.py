@@ -4,6 +4,8 @@ One tracer in a bowl with springs, written from the equation with nothing of the
 the way a layer mean is told.
 """
 
+from dataclasses import dataclass
+
 import numpy as np
 from column_checks import (
     DAY,
@@ -25,26 +27,15 @@ from strata.lake.site import BedSource, Spring
 
 #: A basin like a lake's, with a flat floor.
 BOWL = np.array([9.0, 7.5, 6.0, 4.5, 3.0]) * 1e8
+FLOOR = 200.0  # m
 
 
 def bowl_with_springs(layers, years, dt_days, diffusivity=2e-7):
     """Return phosphate of a lake with two springs, bed flux and diffusion, by the column."""
-    faces = np.linspace(0.0, 200.0, layers + 1)
+    faces = np.linspace(0.0, FLOOR, layers + 1)
     depth = 0.5 * (faces[1:] + faces[:-1])
-    springs = tuple(
-        Spring(
-            name,
-            sum(between) / 2,
-            flow,
-            20.0,
-            salinity,
-            {"DIC": 1.0, "alkalinity": 1.0, "phosphate": phosphate},
-            spread=between,
-        )
-        for name, between, flow, salinity, phosphate in BOWL_SPRINGS
-    )
-    bed = (BedSource("phosphate", 100.0, 200.0, BOWL_BED),)
-    lake = plain_lake(faces, BOWL, diffusivity=diffusivity, springs=springs, bed=bed)
+    bed = (BedSource("phosphate", *BOWL_BED_BETWEEN, BOWL_BED),)
+    lake = plain_lake(faces, BOWL, diffusivity=diffusivity, springs=bowl_springs(), bed=bed)
     column = column_of(lake, 1.0 + 0.02 * depth)
     column.values[:, PHOSPHATE] = means_of(bowl_start, column.basin)
     start = column.values[:, PHOSPHATE].copy()
@@ -58,6 +49,23 @@ BOWL_SPRINGS = (
     ("upper", (80.0, 100.0), 20.0, 2.9, 0.1),
 )
 BOWL_BED = 1e-8  # mol m-2 s-1
+BOWL_BED_BETWEEN = (100.0, 200.0)  # m
+
+
+def bowl_springs():
+    """Return the springs of the bowl, which seep in evenly over their intervals."""
+    return tuple(
+        Spring(
+            name,
+            sum(between) / 2,
+            flow,
+            20.0,
+            salinity,
+            {"DIC": 1.0, "alkalinity": 1.0, "phosphate": phosphate},
+            spread=between,
+        )
+        for name, between, flow, salinity, phosphate in BOWL_SPRINGS
+    )
 
 
 def bowl_start(depth):
@@ -65,50 +73,80 @@ def bowl_start(depth):
     return 0.2 + 0.5 / (1 + np.exp(-(depth - 140.0) / 6.0))
 
 
-def by_lines(layers, years, diffusivity):
-    """Return phosphate of the same lake by lines: central differences, BDF in time [scipy].
+@dataclass(frozen=True)
+class Lines:
+    """The bowl cut into even layers, for solutions by lines.
 
     Written from the equation, with nothing of the program but the areas: A dc/dt = d/dz (A K
     dc/dz) + d/dz (Q c) + s c_in + bed flux (-dA/dz), Q rising from the floor as springs enter.
     """
-    area_at = PchipInterpolator(np.linspace(0.0, 200.0, len(BOWL)), BOWL)
-    faces = np.linspace(0.0, 200.0, layers + 1)
-    depth, step = 0.5 * (faces[1:] + faces[:-1]), 200.0 / layers
-    area, volume = area_at(faces), np.diff(area_at.antiderivative()(faces))
-    flow, entering = np.zeros(layers + 1), np.zeros(layers)
-    for _, (top, foot), water, _, phosphate in BOWL_SPRINGS:
-        flow += water * np.clip((foot - faces) / (foot - top), 0.0, 1.0)
-        share = np.clip(np.minimum(faces[1:], foot) - np.maximum(faces[:-1], top), 0, None)
-        entering += phosphate * water * share / (foot - top)
+
+    faces: np.ndarray  # (n + 1,) m
+    area: np.ndarray  # (n + 1,) m2
+    volume: np.ndarray  # (n,) m3
+    flow: np.ndarray  # (n + 1,) m3/s, upward
+    springs: np.ndarray  # (springs, n) m3/s of each that enters each layer
+    bed: np.ndarray  # (n,) m2
+
+    @property
+    def depth(self):
+        """Return the depth of the middle of each layer [m]."""
+        return 0.5 * (self.faces[1:] + self.faces[:-1])
+
+    def conductance(self, diffusivity):
+        """Return area times diffusivity over distance at the faces [m3 s-1]."""
+        spread = self.area * diffusivity / (self.faces[1] - self.faces[0])
+        spread[0] = spread[-1] = 0.0
+        return spread
+
+    def matrix(self, diffusivity):
+        """Return M of dc/dt = M c + what enters over the volume [s-1]."""
+        spread, flow = self.conductance(diffusivity), self.flow
+        lower, upper = spread[:-1].copy(), spread[1:].copy()  # to the neighbours
+        middle = -(spread[:-1] + spread[1:])
+        # half of what passes a face comes from either side; at the top the outlet takes c
+        middle[1:] -= 0.5 * flow[1:-1]
+        middle[:-1] += 0.5 * flow[1:-1]
+        lower[1:] -= 0.5 * flow[1:-1]
+        upper[:-1] += 0.5 * flow[1:-1]
+        middle[0] -= flow[0]
+        bands = diags([lower[1:], middle, upper[:-1]], [-1, 0, 1])
+        return csc_matrix(bands.multiply(1 / self.volume[:, None]))
+
+
+def lines_of_bowl(layers):
+    """Return the bowl with its springs, cut for solutions by lines."""
+    area_at = PchipInterpolator(np.linspace(0.0, FLOOR, len(BOWL)), BOWL)
+    faces = np.linspace(0.0, FLOOR, layers + 1)
+    area = area_at(faces)
+    flow, springs = np.zeros(layers + 1), np.zeros((len(BOWL_SPRINGS), layers))
+    for water, (_, (top, foot), total, _, _) in zip(springs, BOWL_SPRINGS, strict=True):
+        flow += total * np.clip((foot - faces) / (foot - top), 0.0, 1.0)
+        inside = np.minimum(faces[1:], foot) - np.maximum(faces[:-1], top)
+        water[:] = total * np.clip(inside, 0, None) / (foot - top)
     bed = area[:-1] - area[1:]
     bed[-1] += area[-1]
-    entering += BOWL_BED * bed * (depth > 100.0)
-    spread = area * diffusivity / step
-    spread[0] = spread[-1] = 0.0
-    lower, upper = np.zeros(layers), np.zeros(layers)  # to the neighbour above and below
-    middle = -(spread[:-1] + spread[1:])
-    lower += spread[:-1]
-    upper += spread[1:]
-    # half of what passes a face comes from either side; at the top the outlet takes c itself
-    middle[1:] -= 0.5 * flow[1:-1]
-    middle[:-1] += 0.5 * flow[1:-1]
-    lower[1:] -= 0.5 * flow[1:-1]
-    upper[:-1] += 0.5 * flow[1:-1]
-    middle[0] -= flow[0]
-    matrix = diags([lower[1:], middle, upper[:-1]], [-1, 0, 1]).multiply(1 / volume[:, None])
-    matrix = csc_matrix(matrix)
-    start = bowl_start(depth)
+    volume = np.diff(area_at.antiderivative()(faces))
+    return Lines(faces, area, volume, flow, springs, bed)
+
+
+def by_lines(layers, years, diffusivity):
+    """Return phosphate of the same lake by lines: central differences, BDF in time [scipy]."""
+    lines = lines_of_bowl(layers)
+    matrix, depth = lines.matrix(diffusivity), lines.depth
+    entering = np.array([phosphate for *_, phosphate in BOWL_SPRINGS]) @ lines.springs
+    entering += BOWL_BED * lines.bed * (depth > BOWL_BED_BETWEEN[0])
     solved = solve_ivp(
-        lambda _, c: matrix @ c + entering / volume,
+        lambda _, c: matrix @ c + entering / lines.volume,
         (0.0, years * YEAR),
-        start,
+        bowl_start(depth),
         method="BDF",
         jac=matrix,
         rtol=1e-7,
         atol=1e-9,
         t_eval=[years * YEAR],
     )
-    return depth, solved.y[:, -1], volume
+    return depth, solved.y[:, -1], lines.volume
 
 
 def against_lines(layers, years=30.0, dt_days=2.0, diffusivity=2e-7):

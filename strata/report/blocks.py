@@ -9,7 +9,7 @@ import xarray as xr
 
 from strata.limits import BREACHED, KEPT, UNCERTAIN, Limits, Verdict, VerdictRow
 from strata.margins import cubic_kilometres, tonnes
-from strata.report.plot import calendar_years, record_of
+from strata.report.drawing import calendar_years, record_of
 from strata.report.tables import (
     amount_text,
     digits,

@@ -1,6 +1,6 @@
 """Figures of a dossier: several axes each, with the same colours and limits for every plan."""
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from typing import Any
 
@@ -13,6 +13,7 @@ from matplotlib.ticker import MaxNLocator
 from strata.lake.site import Lake, Profile
 from strata.limits import Limits
 from strata.report import plot
+from strata.report.drawing import SHOWN
 
 STYLE: dict[str, Any] = {
     "font.size": 9.0,
@@ -73,6 +74,16 @@ def legend(figure: Figure, source: Any, columns: int = 6) -> None:
     figure.legend(handles, labels, loc="upper left", ncols=columns, bbox_to_anchor=(0.06, 1.0))
 
 
+def outer_labels(axes: np.ndarray, names: Iterable[str] = ()) -> None:
+    """Leave the names of axes on the outer ones alone; name each column on top."""
+    for ax in axes[:, 1:].flat:
+        ax.set_ylabel("")
+    for ax in axes[:-1].flat:
+        ax.set_xlabel("")
+    for ax, name in zip(axes[0], names, strict=False):
+        ax.set_title(name, loc="left")
+
+
 def limits_through_time(
     results: Mapping[str, xr.Dataset], limits: Limits, baseline: xr.Dataset | None
 ) -> Figure:
@@ -117,62 +128,41 @@ def main_gradient(
 def gas_pressure(results: Mapping[str, xr.Dataset]) -> Figure:
     """Return gas pressure against depth at the end of every plan, the start as a thin line."""
     figure, axes = grid(1, len(results), 3.9, sharey=True, wspace=0.08)
-    for number, (ax, (name, result)) in enumerate(zip(axes[0], results.items(), strict=True)):
+    for ax, result in zip(axes[0], results.values(), strict=True):
         years = plot.calendar_years(result)
         plot.gas_pressure(result, ax, year=float(years[-1] - years[0]), compare=0.0)
-        ax.set_title(name, loc="left")
-        if number:
-            ax.set_ylabel("")
+    outer_labels(axes, results)
     legend(figure, axes[0, 0])
     return figure
 
 
 def sections(results: Mapping[str, xr.Dataset], variables: Sequence[str]) -> Figure:
     """Return depth-time sections: a row per variable, a column per plan, one scale per row."""
-    rows = len(variables)
-    figure, axes = grid(
-        rows,
-        len(results),
-        0.7 + 1.95 * rows,
-        sharex=True,
-        sharey=True,
-        right=0.90,
-        wspace=0.08,
-        hspace=0.14,
-        top=1.0 - 0.28 / (0.7 + 1.95 * rows),
-    )
-    for row, variable in enumerate(variables):
-        limits = plot.colour_limits(list(results.values()), variable)
-        for column, (name, result) in enumerate(results.items()):
-            ax = axes[row, column]
-            ax.grid(False)
-            mesh = plot.section(result, variable, ax, limits)[0]
-            if row == 0:
-                ax.set_title(name, loc="left")
-            if column:
-                ax.set_ylabel("")
-            if row < rows - 1:
-                ax.set_xlabel("")
-        _colour_bar(figure, mesh, axes[row, -1], variable)
-    return figure
-
-
-def _colour_bar(figure: Figure, mesh: Any, ax: Any, variable: str, words: str = "") -> None:
-    """Put a colour bar with name and unit to the right of a row."""
-    box = ax.get_position()
-    room = figure.add_axes((0.915, box.y0, 0.012, box.height))
-    bar = figure.colorbar(mesh, cax=room)
-    name, unit, _, _ = plot.SHOWN[variable]
-    bar.set_label(f"{words}{name} [{unit}]")
-    if words:
-        room.axhline(0.0, color="0.2", linewidth=1.0, linestyle="dotted")
-    bar.outline.set_visible(False)
+    limits = [plot.colour_limits(list(results.values()), variable) for variable in variables]
+    return _sections(results, variables, limits)
 
 
 def differences(
     results: Mapping[str, xr.Dataset], baseline: xr.Dataset, variables: Sequence[str]
 ) -> Figure:
     """Return sections of plan less lake left alone: a row per variable, a column per plan."""
+    limits = []
+    for variable in variables:
+        alone = baseline[variable].values[-1]
+        changes = [np.abs(one[variable].values[-1] - alone) for one in results.values()]
+        reach = max(float(np.nanmax(change)) for change in changes) / SHOWN[variable][2]
+        limits.append((-reach, reach))
+    return _sections(results, variables, limits, baseline, "change of ")
+
+
+def _sections(
+    results: Mapping[str, xr.Dataset],
+    variables: Sequence[str],
+    limits: Sequence[tuple[float, float]],
+    baseline: xr.Dataset | None = None,
+    words: str = "",
+) -> Figure:
+    """Return sections with the limits of their colours by row; words go before its name."""
     rows = len(variables)
     height = 0.7 + 1.95 * rows
     figure, axes = grid(
@@ -186,30 +176,25 @@ def differences(
         hspace=0.14,
         top=1.0 - 0.28 / height,
     )
-    for row, variable in enumerate(variables):
-        reach = (
-            max(
-                float(
-                    np.nanmax(
-                        np.abs(result[variable].values[-1] - baseline[variable].values[-1])
-                    )
-                )
-                for result in results.values()
-            )
-            / plot.SHOWN[variable][2]
-        )
-        for column, (name, result) in enumerate(results.items()):
-            ax = axes[row, column]
+    for row, variable, bounds in zip(axes, variables, limits, strict=True):
+        for ax, result in zip(row, results.values(), strict=True):
             ax.grid(False)
-            mesh = plot.section(result, variable, ax, (-reach, reach), baseline)[0]
-            if row == 0:
-                ax.set_title(name, loc="left")
-            if column:
-                ax.set_ylabel("")
-            if row < rows - 1:
-                ax.set_xlabel("")
-        _colour_bar(figure, mesh, axes[row, -1], variable, "change of ")
+            mesh = plot.section(result, variable, ax, bounds, baseline)[0]
+        _colour_bar(figure, mesh, row[-1], variable, words)
+    outer_labels(axes, results)
     return figure
+
+
+def _colour_bar(figure: Figure, mesh: Any, ax: Any, variable: str, words: str = "") -> None:
+    """Put a colour bar with name and unit to the right of a row."""
+    box = ax.get_position()
+    room = figure.add_axes((0.915, box.y0, 0.012, box.height))
+    bar = figure.colorbar(mesh, cax=room)
+    name, unit, _, _ = SHOWN[variable]
+    bar.set_label(f"{words}{name} [{unit}]")
+    if words:
+        room.axhline(0.0, color="0.2", linewidth=1.0, linestyle="dotted")
+    bar.outline.set_visible(False)
 
 
 def profiles(results: Mapping[str, xr.Dataset], years: Sequence[float]) -> Figure:
@@ -225,15 +210,11 @@ def profiles(results: Mapping[str, xr.Dataset], years: Sequence[float]) -> Figur
         wspace=0.1,
         hspace=0.2,
     )
-    for row, (name, result) in enumerate(results.items()):
-        for column, variable in enumerate(variables):
-            ax = axes[row, column]
+    for row, (name, result) in zip(axes, results.items(), strict=True):
+        for ax, variable in zip(row, variables, strict=True):
             plot.profiles(result, variable, ax, years)
-            if column:
-                ax.set_ylabel("")
-            if row < rows - 1:
-                ax.set_xlabel("")
-        axes[row, 0].set_title(name, loc="left")
+        row[0].set_title(name, loc="left")
+    outer_labels(axes)
     legend(figure, axes[0, 0])
     return figure
 
@@ -243,14 +224,10 @@ def methane(results: Mapping[str, xr.Dataset]) -> Figure:
     figure, axes = grid(
         2, len(results), 4.9, sharex=True, sharey="row", wspace=0.1, hspace=0.42
     )
-    for column, (name, result) in enumerate(results.items()):
-        plot.gas_in_place(result, axes[0, column])
-        plot.methane_fate(result, axes[1, column])
-        axes[0, column].set_title(name, loc="left")
-        axes[0, column].set_xlabel("")
-        if column:
-            axes[0, column].set_ylabel("")
-            axes[1, column].set_ylabel("")
+    for (above, below), result in zip(axes.T, results.values(), strict=True):
+        plot.gas_in_place(result, above)
+        plot.methane_fate(result, below)
+    outer_labels(axes, results)
     legend(figure, axes[0, 0])
     handles, labels = axes[1, 0].get_legend_handles_labels()
     figure.legend(handles, labels, loc="upper left", ncols=3, bbox_to_anchor=(0.06, 0.505))
@@ -262,20 +239,15 @@ def plants(results: Mapping[str, xr.Dataset]) -> Figure:
     figure, axes = grid(
         3, len(results), 6.6, sharex=True, sharey="row", wspace=0.1, hspace=0.15
     )
-    for column, (name, result) in enumerate(results.items()):
-        power, purity, depth = axes[:, column]
+    for (power, purity, depth), result in zip(axes.T, results.values(), strict=True):
         plot.plant_series(result, "net_power", power, 1e6, "MW")
         plot.plant_series(result, "product_purity", purity)
         *_, gradient = plot.trap_depth(result, depth)
-        power.set_title(name, loc="left")
-        power.set_ylabel("" if column else "net power [MW]")
-        purity.set_ylabel("" if column else "CH$_4$ in the product [1]")
+        power.set_ylabel("net power [MW]")
+        purity.set_ylabel("CH$_4$ in the product [1]")
         purity.set_ylim(0.0, 1.02)
-        for ax in (power, purity):
-            ax.set_xlabel("")
-        if column:
-            depth.set_ylabel("")
         power.legend(loc="best")
+    outer_labels(axes, results)
     axes[2, 0].invert_yaxis()
     axes[2, 0].legend(handles=[gradient], loc="best")
     return figure

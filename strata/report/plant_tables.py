@@ -12,7 +12,7 @@ from strata.plant.power import METHANE_WARMING
 from strata.plant.streams import NORMAL_PRESSURE
 from strata.report import riser
 from strata.report.blocks import Table
-from strata.report.plot import calendar_years, record_of
+from strata.report.drawing import calendar_years, record_of
 from strata.report.tables import aligned, digits
 from strata.variables import PLANT_SERIES
 

@@ -15,7 +15,13 @@ from strata.constants import ATMOSPHERE
 from strata.errors import ComputationError
 from strata.gas import speciation as at
 from strata.gas.ions import equivalents_of
-from strata.gas.speciation import SETTLED, solve_carbonate
+from strata.gas.speciation import (
+    SETTLED,
+    check_strength,
+    checked_total,
+    checked_water,
+    solve_carbonate,
+)
 
 Array = NDArray[np.float64]
 
@@ -146,19 +152,11 @@ def dose_lime(
     >>> f"{float(water.co2):.1f} mol/m3 of CO2 left, {float(water.calcite):.1f} of calcite"
     '4.7 mol/m3 of CO2 left, 14.7 of calcite'
     """
-    davies = "activities, Davies 1962"
-    source = "carbonate constants, Plummer & Busenberg 1982"
     shaped = np.broadcast_arrays(
-        ranges.within("temperature", temperature, (0.0, 40.0), "degC", source),
-        ranges.within("salinity", salinity, (0.0, 42.0), "g/kg", davies),
-        ranges.within(
-            "pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"
-        ),
-        ranges.within("DIC", dic, (0.0, 3000.0), "mol/m3", "dilute solution"),
-        ranges.within("alkalinity", alkalinity, (-100.0, 400.0), "eq/m3", davies),
-        ranges.within("lime dose", dose, (0.0, 300.0), "mol/m3", davies),
-        ranges.within("calcium", calcium, (0.0, 200.0), "mol/m3", davies),
-        ranges.within("magnesium", magnesium, (0.0, 200.0), "mol/m3", davies),
+        *checked_water(temperature, salinity, pressure, dic, alkalinity),
+        checked_total("lime dose", dose, 300.0),
+        checked_total("calcium", calcium),
+        checked_total("magnesium", magnesium),
         ranges.within("approach", approach, (0.0, 1.0), "", "a share"),
     )
     shape = shaped[0].shape
@@ -168,7 +166,7 @@ def dose_lime(
     bad = _dose_rows(*flat, out, calcite, free)
     if bad >= 0:
         raise ComputationError(f"lime: the ion pairs of row {bad} do not settle")
-    ranges.within("ionic strength", out[:, at.STRENGTH], (0.0, 0.5), "mol/L", davies)
+    check_strength(out)
     carbon, alk, lime, ca = flat[3], flat[4], flat[5], flat[6]
     return Limed(
         ph=out[:, at.PH].reshape(shape),

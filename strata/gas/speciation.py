@@ -182,6 +182,34 @@ class Speciation:
     aragonite_saturation: Array
 
 
+def checked_water(
+    temperature: ArrayLike,
+    salinity: ArrayLike,
+    pressure: ArrayLike,
+    dic: ArrayLike,
+    alkalinity: ArrayLike,
+) -> tuple[Array, ...]:
+    """Return water, in this order, within the ranges in which its carbonate is known."""
+    reaction = "reaction volumes, Millero 1983"
+    return (
+        ranges.within("temperature", temperature, (0.0, 40.0), "degC", _SOURCE),
+        ranges.within("salinity", salinity, (0.0, 42.0), "g/kg", _DAVIES),
+        ranges.within("pressure", pressure, (0.0, 6.2e6), "Pa", reaction),
+        ranges.within("DIC", dic, (0.0, 3000.0), "mol/m3", "dilute solution"),
+        ranges.within("alkalinity", alkalinity, (-100.0, 400.0), "eq/m3", _DAVIES),
+    )
+
+
+def checked_total(name: str, amount: ArrayLike, most: float = 200.0) -> Array:
+    """Return the total of something dissolved [mol m-3], within what activities hold for."""
+    return ranges.within(name, amount, (0.0, most), "mol/m3", _DAVIES)
+
+
+def check_strength(out: Array) -> None:
+    """Refuse solved rows whose ionic strength exceeds that of the law of activities."""
+    ranges.within("ionic strength", out[:, STRENGTH], (0.0, 0.5), "mol/L", _DAVIES)
+
+
 def speciate(
     temperature: ArrayLike,
     salinity: ArrayLike,
@@ -224,26 +252,19 @@ def speciate(
     >>> f"pH {float(water.ph):.2f}, {float(water.co2):.1f} mol/m3 of free CO2"
     'pH 6.34, 50.0 mol/m3 of free CO2'
     """
-    parts = [
-        ranges.within("temperature", temperature, (0.0, 40.0), "degC", _SOURCE),
-        ranges.within("salinity", salinity, (0.0, 42.0), "g/kg", _DAVIES),
-        ranges.within(
-            "pressure", pressure, (0.0, 6.2e6), "Pa", "reaction volumes, Millero 1983"
-        ),
-        ranges.within("DIC", dic, (0.0, 3000.0), "mol/m3", "dilute solution"),
-        ranges.within("alkalinity", alkalinity, (-100.0, 400.0), "eq/m3", _DAVIES),
-        ranges.within("magnesium", magnesium, (0.0, 200.0), "mol/m3", _DAVIES),
-        ranges.within("calcium", calcium, (0.0, 200.0), "mol/m3", _DAVIES),
-        ranges.within("sulfide", sulfide, (0.0, 200.0), "mol/m3", _DAVIES),
-    ]
-    shaped = np.broadcast_arrays(*parts)
+    shaped = np.broadcast_arrays(
+        *checked_water(temperature, salinity, pressure, dic, alkalinity),
+        checked_total("magnesium", magnesium),
+        checked_total("calcium", calcium),
+        checked_total("sulfide", sulfide),
+    )
     shape = shaped[0].shape
     flat = [np.array(part).ravel() for part in shaped]
     out = np.empty((flat[0].size, COLUMNS))
     bad = _rows(*flat, out)
     if bad >= 0:
         raise ComputationError(f"carbonate: the ion pairs of row {bad} do not settle")
-    ranges.within("ionic strength", out[:, STRENGTH], (0.0, 0.5), "mol/L", _DAVIES)
+    check_strength(out)
     column = [out[:, i].reshape(shape) for i in range(COLUMNS)]
     return Speciation(
         ph=column[PH],

@@ -7,6 +7,7 @@ from datetime import date
 
 import numpy as np
 
+from strata.column.tracers import TRACERS
 from strata.lake.site import (
     Cast,
     Climate,
@@ -21,18 +22,6 @@ from strata.lake.site import (
 from strata.plant.plan import Plan, Plant, Return, Stage
 from strata.results import Record
 
-TRACERS = (
-    "temperature",
-    "salinity",
-    "DIC",
-    "alkalinity",
-    "calcium",
-    "CH4",
-    "N2",
-    "O2",
-    "H2S",
-    "phosphate",
-)
 TERMS = (
     "start",
     "surface",

@@ -115,15 +115,6 @@ _GAS = (
 )
 
 
-def stream_tables(accounts: Mapping[str, Account]) -> list[Table]:
-    """Return the tables of every plant: its water and its gas, a column a stream; figures."""
-    return [
-        table
-        for plant, account in accounts.items()
-        for table in (*streams(plant, account), figures(plant, account))
-    ]
-
-
 def streams(plant: str, account: Account) -> list[Table]:
     """Return two tables of a plant, its water and its gas, a column per stream."""
     tables = []

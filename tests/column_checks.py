@@ -341,6 +341,23 @@ def staircase(layer, years=10.0, window=None):
     return (before - after) * column.heat_capacity / (AREA * years * YEAR)
 
 
+# Autumn -----------------------------------------------------------------------------------
+
+
+def heat_lost_in_autumn(step_days):
+    """Return the heat that a cooling lake loses in 90 days [K m3], overturned from the top.
+
+    Diffusivity reaches 1e-4 m2/s where the water is neutral, diffusion number 2.2 in a step of
+    a day.
+    """
+    lake = plain_lake(np.linspace(0.0, 100.0, 51))
+    lake = replace(lake, mixing=Mixing(3e-9, 1e-9, 1e-4, 0.0))
+    column = column_of(lake, np.linspace(1.0, 1.2, 50), np.linspace(25.0, 20.0, 50))
+    before = column.inventory()[TEMPERATURE]
+    run(column, 90 * DAY, step_days * DAY, Weather(18.0, 20.0, 0.0, 0.0, 0.0), visits=3)
+    return before - column.inventory()[TEMPERATURE]
+
+
 # A closed column --------------------------------------------------------------------------
 
 

@@ -288,7 +288,8 @@ def _plume(profile, depth, flow, excess, angle=0.0, alpha=ENTRAINMENT_COEFFICIEN
         float(port.get(name, default))
         for name, default in (("ports", 1.0), ("diameter", 0.05), ("spacing", 10.0))
     )
-    column = (faces, 20.0 * one, one, found * one, 0.0 * one, 101325.0 * one)
+    stability = GRAVITY / _PURE * np.diff(found * one) / 0.5  # layers of 0.5 m
+    column = (faces, 20.0 * one, one, found * one, 0.0 * one, 101325.0 * one, stability)
     source = (float(depth), float(flow), 20.0, 1.0, float(excess), 0.0)
     shape = (ports, diameter, spacing, 0.0, float(angle), float(alpha))
     return faces, follow_plume(*column, 0.75e-3, GRAVITY, *source, *shape)

@@ -2,12 +2,13 @@
 
 import numpy as np
 import pytest
+from column_checks import heat_lost_in_autumn
 from front_checks import front_run, graded, layer_means_of
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.special import j0, jn_zeros
 
-from strata.column.transport import advect, diffuse, face_weights
+from strata.column.transport import DIFFUSION_NUMBER, advect, diffuse, face_weights
 
 
 @pytest.mark.parametrize(
@@ -54,7 +55,7 @@ def test_diffusion_in_a_closed_cylinder_follows_the_cosine_solution():
     for count in (25, 50, 100):
         faces = np.linspace(0, height, count + 1)
         time = height**2 / kappa / 20
-        steps = 60 * (count // 25)  # second order in time and in space
+        steps = 100 * (count // 25)  # second order in time and in space
         values = layer_means_of(lambda z: 1 + np.cos(np.pi * z / height), faces)[:, None]
         conductance = np.full((count + 1, 1), kappa / (height / count))
         work = np.empty((4, *values.shape))
@@ -124,3 +125,20 @@ def test_random_fields_make_no_new_extreme_and_lose_nothing(seed):
     np.testing.assert_allclose(volume @ values, held, rtol=1e-11)
     assert np.all(values >= low - 1e-12 * span)
     assert np.all(values <= high + 1e-12 * span)
+
+
+@pytest.mark.parametrize("number", [0.1, 0.8, DIFFUSION_NUMBER, 1.01 * DIFFUSION_NUMBER, 30.0])
+def test_a_pulse_in_the_top_layer_falls_off_downward(number):
+    # at 2 the second layer would be 5 % of the pulse ahead of the first
+    values = np.zeros((40, 1))
+    values[0] = 1.0
+    conductance = np.full((41, 1), number)
+    diffuse(values, conductance, np.ones(40), 1.0, np.empty((4, 40, 1)))
+    assert np.all(np.diff(values[:, 0]) <= 1e-15)
+    assert np.all(values >= 0.0)
+
+
+def test_a_cooling_lake_loses_the_same_heat_in_steps_of_a_day_and_of_hours():
+    daily, hourly = heat_lost_in_autumn(1.0), heat_lost_in_autumn(0.125)
+    print(f"heat lost in steps of 1 d over that in steps of 3 h: {daily / hourly:.4f}")
+    assert daily == pytest.approx(hourly, rel=0.01)  # first order in the step: 0.3 % a day

@@ -31,6 +31,7 @@ class Lake:
         self.excess = excess(self.centres)
         self.excess_at = excess
         self.same = np.ones(len(self.centres))
+        self.stability = GRAVITY / DENSITY * np.diff(self.excess) / np.diff(self.centres)
 
     def follow(
         self,
@@ -53,6 +54,7 @@ class Lake:
             self.excess,
             0.0 * one,
             101325.0 * one,
+            self.stability,
             0.75e-3,
             GRAVITY,
             float(depth),

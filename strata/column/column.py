@@ -301,6 +301,7 @@ class Column:
             gas_mass=self.gas_mass,
             gas_volume=self.gas_volume,
             pressure=self.pressure,
+            stability=self.seen.stability[1:-1].copy(),
             haline_contraction=self.lake.site.haline_contraction,
             gravity=self.gravity,
         )
@@ -368,8 +369,7 @@ class Column:
 
     def natural(self, around: Surroundings) -> list[Give]:
         """Return all springs and rivers as they enter the column as it is."""
-        stability = self.seen.stability[1:-1]
-        return [inflow.enter(around, stability, self.lake.mixing) for inflow in self._inflows]
+        return [inflow.enter(around, self.lake.mixing) for inflow in self._inflows]
 
     def advance(
         self,

@@ -25,17 +25,16 @@ class Inflow:
     carried: Array  # (m,) amount per second
     spread: Array | None = None  # (n,) share of each layer, where it seeps over an interval
 
-    def enter(self, around: Surroundings, stability: Array, mixing: Mixing) -> Give:
+    def enter(self, around: Surroundings, mixing: Mixing) -> Give:
         """Return the inflow as it enters the column now.
 
         A spring as a plume from its outlet or evenly over its interval; a river over the lake
-        or under to its neutral level.  ``stability`` (n - 1,) is buoyancy frequency squared at
-        the inner faces [s-2].
+        or under to its neutral level.
         """
         if self.spread is not None:
             given, entrained = self.spread, np.zeros_like(self.spread)
         elif self.kind == kernel.RIVERS:
-            given, entrained = plunge(self.source, around, stability, mixing.plunge_mixing)
+            given, entrained = plunge(self.source, around, mixing.plunge_mixing)
         else:
             path = follow(self.source, around, mixing.overshoot)
             given, entrained = path.given, path.entrained
@@ -48,9 +47,7 @@ def even_shares(between: tuple[float, float], basin: Basin) -> Array:
     return np.asarray(share / share.sum())
 
 
-def plunge(
-    source: Source, around: Surroundings, stability: Array, mixing: float
-) -> tuple[Array, Array]:
+def plunge(source: Source, around: Surroundings, mixing: float) -> tuple[Array, Array]:
     """Return the shares in which a river ends in the layers, and what it takes along [m3 s-1].
 
     A river lighter than the lake's surface spreads over it, in the top layer.  A heavier one
@@ -64,8 +61,6 @@ def plunge(
         The river at the surface.
     around : Surroundings
         The lake.
-    stability : ndarray, shape (n - 1,)
-        Buoyancy frequency squared at the inner faces [s-2].
     mixing : float
         Flow taken along over that of the river.
     """
@@ -103,10 +98,6 @@ def plunge(
     flow = (1.0 + mixing) * source.flow
     level = float(around.basin.faces[heavier[0]])
     given = layer_shares(
-        around.basin.faces,
-        np.ascontiguousarray(stability),
-        level,
-        flow,
-        INTRUSION_COEFFICIENT,
+        around.basin.faces, around.stability, level, flow, INTRUSION_COEFFICIENT
     )
     return given, entrained

@@ -30,6 +30,7 @@ class Surroundings:
     gas_mass: Array  # kg m-3
     gas_volume: Array  # m3 m-3
     pressure: Array  # Pa, at the middles
+    stability: Array  # (n - 1,) buoyancy frequency squared at the inner faces, s-2
     haline_contraction: float
     gravity: float
 
@@ -91,6 +92,7 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
         around.gas_mass,
         around.gas_volume,
         around.pressure,
+        around.stability,
         around.haline_contraction,
         around.gravity,
         source.depth,

@@ -22,8 +22,9 @@ Array = NDArray[np.float64]
 #: Share of the step that the trapezoidal part of TR-BDF2 takes: both parts then have one
 #: matrix.
 GAMMA = 2.0 - math.sqrt(2.0)
-#: Largest diffusion number K dt / dz^2 at which TR-BDF2 is used.
-DIFFUSION_NUMBER = 3.0
+#: Largest diffusion number K dt / dz^2 at which TR-BDF2 is used.  It makes nothing negative up
+#: to 3, but beyond 1.5 a pulse in the top layer would leave the second one ahead of the first.
+DIFFUSION_NUMBER = 1.5
 
 
 def face_weights(volume: Array, points: int = 6) -> tuple[Array, NDArray[np.int64]]:
@@ -181,10 +182,10 @@ def _substitute(conductance, part, ratio, pivot, change):
 def diffuse(values, conductance, volume, dt, work):
     """Spread every tracer for one step, second order in time where that stays positive.
 
-    TR-BDF2 [B85] while the largest diffusion number is at most 3, where a spike of one layer
-    does not undershoot; backward Euler beyond.  ``conductance`` (n + 1, m) is area times
-    diffusivity over distance at the faces [m3 s-1], of which only the inner ones are used;
-    ``work`` (4, n, m) is workspace.
+    TR-BDF2 [B85] while the largest diffusion number is at most 1.5, where no pulse of a layer
+    undershoots and one in the top layer falls off downward; backward Euler beyond.
+    ``conductance`` (n + 1, m) is area times diffusivity over distance [m3 s-1] at the faces, of
+    which only the inner ones are used; ``work`` (4, n, m) is workspace.
     """
     count, tracers = values.shape
     ratio, pivot, gain, change = work[0], work[1], work[2], work[3]

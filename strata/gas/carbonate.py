@@ -172,7 +172,7 @@ def free_co2(dic, alk, k1, k2, kw, h_guess):
         step = f / slope
         if slope > 0.0 and step < h:
             h -= step
-            if abs(step) <= 1e-9 * h:
+            if abs(step) <= 1e-6 * h:  # Newton's error is the square of its step
                 break
         else:
             h *= 8.0

@@ -122,29 +122,6 @@ def _take_in(face_depth, entrained, top, foot, flow, hint):
 
 
 @compiled
-def _stability(face_depth, lake, haline_contraction, gravity):
-    """Return the buoyancy frequency squared [s-2] at the inner faces."""
-    n = len(face_depth) - 1
-    out = np.zeros(max(n - 1, 0))
-    for i in range(n - 1):
-        p = 0.5 * (lake[4][i] + lake[4][i + 1])
-        upper = parcel_density(
-            lake[0][i], lake[1][i], p, lake[2][i], lake[3][i], haline_contraction
-        )
-        lower = parcel_density(
-            lake[0][i + 1],
-            lake[1][i + 1],
-            p,
-            lake[2][i + 1],
-            lake[3][i + 1],
-            haline_contraction,
-        )
-        apart = 0.5 * (face_depth[i + 2] - face_depth[i])
-        out[i] = gravity * (lower - upper) / (upper * apart)
-    return out
-
-
-@compiled
 def _neutral_depth(face_depth, lake, water, depth, haline_contraction):
     """Return the depth [m] where water is first neutral on its way down or up from a start."""
     n = len(face_depth) - 1
@@ -361,6 +338,7 @@ def follow_plume(
     gas_mass,
     gas_volume,
     pressure,
+    stability,
     haline_contraction,
     gravity,
     depth,
@@ -385,6 +363,8 @@ def follow_plume(
     theta, salinity, gas_mass, gas_volume, pressure : ndarray, shape (n,)
         The lake: potential temperature [degC], salinity [g kg-1], mass [kg m-3] and partial
         volume [m3 m-3] of dissolved gas, pressure [Pa].
+    stability : ndarray, shape (n - 1,)
+        Its buoyancy frequency squared at the inner faces [s-2].
     haline_contraction : float
         Per g/kg.
     gravity : float
@@ -418,7 +398,6 @@ def follow_plume(
     n = len(face_depth) - 1
     lake = (theta, salinity, gas_mass, gas_volume, pressure)
     water = (theta0, salinity0, gas_mass0, gas_volume0)
-    stability = _stability(face_depth, lake, haline_contraction, gravity)
     entrained = np.zeros(n)
     ports = float(ports)
     momentum = flow * flow / (ports * 0.25 * math.pi * port_diameter * port_diameter)

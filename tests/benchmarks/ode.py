@@ -478,9 +478,6 @@ def main() -> None:
     """Print the ratios of all cases."""
     fixed = Case("smooth, fixed K", 30, 200, 5.0)
     smooth(fixed)
-    # K at most 5e-5: with 1e-4 a step of a day has K dt / dz^2 = 2.2 on these layers, just
-    # under where TR-BDF2 is left; cooling then leaves the second layer colder than the first,
-    # the mixed layer is told one layer deep, and integrals are off by 0.1 of their swing
     stable = replace(
         fixed, name="smooth, K by stability", coefficient=1e-8, least=1e-8, most=5e-5
     )

@@ -184,8 +184,8 @@ def diffuse(values, conductance, volume, dt, work):
 
     TR-BDF2 [B85] while the largest diffusion number is at most 1.5, where no pulse of a layer
     undershoots and one in the top layer falls off downward; backward Euler beyond.
-    ``conductance`` (n + 1, m) is area times diffusivity over distance [m3 s-1] at the faces, of
-    which only the inner ones are used; ``work`` (4, n, m) is workspace.
+    ``conductance`` (n + 1, m) is area times diffusivity over distance [m3 s-1] at the faces;
+    only inner ones are used.  ``work`` (4, n, m) is workspace.
     """
     count, tracers = values.shape
     ratio, pivot, gain, change = work[0], work[1], work[2], work[3]

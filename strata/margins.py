@@ -10,6 +10,8 @@ from collections.abc import Callable, Mapping, Sequence
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from strata.column.start import hydrostatic_pressure, state_of
+from strata.column.tracers import DIC, METHANE, TRACERS
 from strata.compiled import broadcast
 from strata.constants import ATMOSPHERE, GAS_CONSTANT, ZERO_CELSIUS
 from strata.gas import bubble_point, speciate
@@ -373,15 +375,11 @@ def cast_errors(
     """
     methane = _error(lake, "CH4", depth)
     carbon = _carbon_dioxide_error(lake, depth, found)
-    partial = np.zeros(len(depth))
-    for gas, error in (("methane", methane), ("carbon_dioxide", carbon)):
-        amount = found[gas][0]
-        relative = np.divide(error, amount, out=np.zeros_like(error), where=amount > 0.0)
-        partial += (relative * found[f"{gas}_partial_pressure"][0]) ** 2
+    pressing = _gas_pressure_error(methane, carbon, found)
     middle = int(np.searchsorted(depth, found["gradient_depth"][0]))
     reading = _density_error(lake, depth, found, methane, carbon)[middle]
     return {
-        "gas_pressure_error": np.sqrt(partial) / found["gas_pressure"][0],
+        "gas_pressure_error": pressing / found["gas_pressure"][0],
         "methane_in_place_error": np.asarray(
             np.sum(methane * volume) / there
             if (there := found["methane_in_place"][0])
@@ -389,6 +387,45 @@ def cast_errors(
         ),
         "gradient_strength_error": np.sqrt(2.0) * reading / found["gradient_strength"][0],
     }
+
+
+def of_samples(lake: Lake) -> dict[str, Profile]:
+    """Return what the water samples say by themselves, before any layer is made of them.
+
+    At the depths at which methane was sampled (or CO2, or DIC); what was read at other depths
+    is interpolated linearly to them.  Errors are those of CH4 and CO2, as in
+    :func:`cast_errors`.
+
+    Returns
+    -------
+    dict
+        "gas_pressure" [Pa] and "saturation" [1].
+    """
+    profiles = lake.cast.profiles
+    depth = next(profiles[name].depth for name in ("CH4", "CO2", "DIC") if name in profiles)
+    read = {name: np.interp(depth, one.depth, one.value) for name, one in profiles.items()}
+    values = state_of(read, depth, lake.site)[np.newaxis]
+    pressure = hydrostatic_pressure(depth, lake.site)
+    found = water(values, TRACERS, depth, pressure, lake.site)
+    found["methane"] = values[..., METHANE]
+    found["dissolved_inorganic_carbon"] = values[..., DIC]
+    methane = _error(lake, "CH4", depth)
+    error = _gas_pressure_error(methane, _carbon_dioxide_error(lake, depth, found), found)
+    gas = found["gas_pressure"][0]
+    return {
+        "gas_pressure": Profile(depth, gas, error),
+        "saturation": Profile(depth, gas / pressure, error / pressure),
+    }
+
+
+def _gas_pressure_error(methane: Array, carbon: Array, found: Mapping[str, Array]) -> Array:
+    """Return the standard error of gas pressure [Pa] from those of CH4 and CO2 [mol m-3]."""
+    partial = np.zeros(len(methane))
+    for gas, error in (("methane", methane), ("carbon_dioxide", carbon)):
+        amount = found[gas][0]
+        relative = np.divide(error, amount, out=np.zeros_like(error), where=amount > 0.0)
+        partial += (relative * found[f"{gas}_partial_pressure"][0]) ** 2
+    return np.sqrt(partial)
 
 
 def _error(lake: Lake, name: str, depth: Array) -> Array:

@@ -4,9 +4,12 @@ import os
 import sys
 
 import pytest
+from click.testing import CliRunner
+from matplotlib import image
 
 from strata.caution import CAUTION, MARK
 from strata.cli import output
+from strata.cli.group import group
 from strata.cli.terminal import announce_compilation, progress
 from strata.errors import StrataError
 
@@ -88,3 +91,27 @@ def test_the_first_run_says_that_it_compiles(monkeypatch, capsys, tmp_path):
     (tmp_path / "formula.nbi").write_bytes(b"")
     announce_compilation()
     assert capsys.readouterr().err == ""
+
+
+def test_inspect_draws_todays_column_and_may_draw_it_again(folder):
+    out = folder.path / "pictures" / "today.png"
+    for _ in range(2):
+        result = CliRunner().invoke(group, ["inspect", str(folder.lake), "--figure", str(out)])
+        assert result.exit_code == 0, result.stderr
+    assert f"figure: {out}" in result.stdout
+    assert CAUTION.encode() in out.read_bytes()
+    height, width, _ = image.imread(out).shape
+    assert (width, height) == (1440, 1140)  # 9.6 by 7.6 inches
+    assert [path.name for path in out.parent.iterdir()] == ["today.png"]
+
+
+def test_a_figure_that_cannot_be_kept_is_refused_before_the_lake_is_read(folder):
+    (folder.path / "mine.png").write_text("mine")
+    for name, words in (
+        ("today.pdf", "today.pdf: figures are written as PNG; a name in .png is required"),
+        ("mine.png", "mine.png: exists and was not written by strata; choose another name"),
+    ):
+        result = CliRunner().invoke(group, ["inspect", "nowhere.toml", "--figure", name])
+        assert (result.exit_code, result.stdout) == (2, "")
+        assert words in result.stderr
+    assert (folder.path / "mine.png").read_text() == "mine"

@@ -1,5 +1,6 @@
 """What is derived from a column follows its definition and, where published, its number."""
 
+from dataclasses import replace
 from itertools import pairwise
 
 import numpy as np
@@ -7,10 +8,11 @@ import pytest
 import synthetic
 
 from strata import margins
-from strata.gas import bubble_point
+from strata.gas import air_equilibrium, bubble_point, speciate
 from strata.gas.air import argon_of_nitrogen, sea_water_equilibrium
+from strata.lake.site import Cast
 from strata.water import buoyancy_frequency_squared
-from strata.water.stability import mixed_layer_depth
+from strata.water.stability import mixed_layer_depth, standard_gravity
 
 DEPTH = np.arange(0.5, 400.0, 1.0)
 FACES = np.arange(0.0, 401.0, 1.0)
@@ -219,3 +221,38 @@ def test_argon_goes_with_nitrogen_in_the_step_that_the_air_sets():
     water = np.array([5.0, 15.0, 25.0]), 0.0
     ratio = sea_water_equilibrium("Ar", *water) / sea_water_equilibrium("N2", *water)
     np.testing.assert_allclose(argon_of_nitrogen(*water), ratio, rtol=0.011)
+
+
+def test_samples_give_by_themselves_the_gas_pressure_of_their_own_water():
+    lake = synthetic.lake(100)
+    found = margins.of_samples(lake)
+    casts = lake.cast.profiles
+    gas = casts["CH4"]
+    k = 15
+    depth = gas.depth[k]
+    temperature, salinity = (
+        np.interp(depth, casts[name].depth, casts[name].value)
+        for name in ("temperature", "salinity")
+    )
+    pressure = lake.site.air_pressure + 1000.0 * standard_gravity(-2.0) * depth
+    water = speciate(
+        temperature, salinity, casts["DIC"].value[k], casts["alkalinity"].value[k], pressure
+    )
+    nitrogen = air_equilibrium("N2", temperature, salinity, lake.site.air_pressure)
+    argon = argon_of_nitrogen(temperature, salinity)
+    amounts = {"CH4": gas.value[k], "CO2": water.co2, "N2": nitrogen, "Ar": argon * nitrogen}
+    expected = float(bubble_point(temperature, salinity, amounts).pressure)
+    assert found["gas_pressure"].value[k] == pytest.approx(expected, rel=1e-6)
+    assert found["saturation"].value[k] == pytest.approx(expected / pressure, rel=1e-6)
+    np.testing.assert_array_equal(found["saturation"].depth, gas.depth)
+
+
+def test_more_error_of_methane_makes_that_of_the_gas_pressure_of_samples_larger():
+    lake = synthetic.lake(100)
+    casts = dict(lake.cast.profiles)
+    methane = casts["CH4"]
+    casts["CH4"] = replace(methane, error=2.0 * methane.error)
+    worse = margins.of_samples(replace(lake, cast=Cast(casts)))["gas_pressure"].error
+    error = margins.of_samples(lake)["gas_pressure"].error
+    assert np.all(worse > error)
+    assert np.all(worse < 2.0 * error)  # that of CO2 has not changed

@@ -12,7 +12,7 @@ import synthetic
 from matplotlib.figure import Figure
 
 import strata
-from strata import results
+from strata import margins, results
 from strata.errors import InputError
 from strata.limits import BREACHED, Limit, Limits, judge
 from strata.report import figures, plot, tables
@@ -177,6 +177,40 @@ def test_all_plans_of_a_figure_share_colours_and_limits(runs):
     panels = [ax for ax in drawn.axes if ax.collections and ax.get_title("left") in NAMES]
     assert len(panels) == 3
     assert len({ax.collections[0].get_clim() for ax in panels}) == 1
+
+
+def test_todays_column_is_drawn_with_what_was_measured_and_what_follows_from_it(runs, lake):
+    run = runs[NAMES[0]]
+    with figures.house_style():
+        figure = figures.today(run, lake)
+        figure.canvas.draw()
+    axes = figure.axes
+    assert figure.legends[0].get_window_extent().x1 < figure.bbox.x1  # all of it is seen
+    names = [ax.get_xlabel() for ax in axes]
+    assert names == [
+        "temperature [°C]", "salinity [g/kg]", "density at air pressure [kg/m³]",
+        "N² [1/s²]", "CH$_4$ [mol/m³]", "free CO$_2$ [mol/m³]", "pressure [bar]",
+        "saturation [1]",
+    ]  # fmt: skip
+    assert [bool(ax.get_ylabel()) for ax in axes] == 2 * [True, False, False, False]
+    sampled = margins.of_samples(lake)
+    points = {ax.get_xlabel(): line for ax in axes for line in ax.lines
+              if line.get_marker() == "o"}  # fmt: skip
+    for name, expected in (
+        ("CH$_4$ [mol/m³]", lake.cast.profiles["CH4"].value),
+        ("pressure [bar]", sampled["gas_pressure"].value / 1e5),
+        ("saturation [1]", sampled["saturation"].value),
+    ):
+        np.testing.assert_allclose(points[name].get_xdata(), expected)
+        np.testing.assert_allclose(points[name].get_ydata(), lake.cast.profiles["CH4"].depth)
+    density = axes[2].lines[0].get_xdata()
+    assert np.all(density <= run["density"][0])  # water expands on its way up
+    # over the upper 8 m, 0.4 bar, by less than 0.04 kg/m3 (compressibility 4.6e-10 1/Pa)
+    np.testing.assert_allclose(density[:2], run["density"][0, :2], atol=0.04)
+    stable = run["buoyancy_frequency_squared"].values[0] > 0.0
+    np.testing.assert_array_equal(np.isfinite(axes[3].lines[0].get_xdata()), stable)
+    for ax in axes:
+        assert ax.yaxis_inverted()
 
 
 def test_the_best_pressure_is_marked_at_the_largest_net_energy(sweep, ax):

@@ -47,6 +47,19 @@ def writable_file(path: Path) -> Path:
     return path
 
 
+def writable_figure(path: Path) -> Path:
+    """Find out whether a figure can be written; see :func:`writable_file`.
+
+    Raises
+    ------
+    strata.StrataError
+        Also if its name promises something other than PNG.
+    """
+    if path.suffix.lower() != ".png":
+        raise StrataError(f"{path}: figures are written as PNG; a name in .png is required")
+    return writable_file(path)
+
+
 def copy_unless_there(source: Path, target: Path) -> Path | None:
     """Copy a file; one that is there already stays as it is.
 

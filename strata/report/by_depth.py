@@ -231,3 +231,16 @@ def gas_pressure(
     ax.set_xlim(0.0, float(hydrostatic[-1]) * 1.03)
     ax.set_xlabel("pressure [bar]")
     return artists
+
+
+def stability(result: xr.Dataset, ax: Axes, year: float = 0) -> list[Artist]:
+    """Draw buoyancy frequency squared against depth; gaps where water is not stable."""
+    squared = result["buoyancy_frequency_squared"].values[record_of(result, year)]
+    shown = np.where(squared > 0.0, squared, np.nan)
+    start = calendar_years(result)[0]
+    line: dict[str, Any] = {"color": "0.15", "linewidth": 1.4, "label": f"{start + year:.0f}"}
+    artists: list[Artist] = list(ax.plot(shown, result["face"].values, **line))
+    ax.set_xscale("log")
+    depth_axis(ax, float(result["face"].values[-1]))
+    ax.set_xlabel("N² [1/s²]")
+    return artists

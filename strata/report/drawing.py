@@ -37,6 +37,7 @@ SHOWN: Mapping[str, tuple[str, str, float, str]] = {
     "carbon_dioxide": ("free CO$_2$", "mol/m³", 1.0, "cividis"),
     "saturation": ("saturation", "1", 1.0, "viridis"),
     "density": ("density", "kg/m³", 1.0, "viridis"),
+    "potential_density": ("density at air pressure", "kg/m³", 1.0, "viridis"),
     "oxygen": ("O$_2$", "mol/m³", 1.0, "cividis"),
     "phosphate": ("phosphate", "mmol/m³", 1e-3, "cividis"),
     "hydrogen_sulfide": ("H$_2$S", "mol/m³", 1.0, "cividis"),

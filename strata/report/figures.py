@@ -2,6 +2,7 @@
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
+from pathlib import Path
 from typing import Any
 
 import numpy as np
@@ -10,10 +11,14 @@ from matplotlib import rc_context
 from matplotlib.figure import Figure
 from matplotlib.ticker import MaxNLocator
 
+from strata import __version__, margins
+from strata.caution import CAUTION
 from strata.lake.site import Lake, Profile
 from strata.limits import Limits
 from strata.report import plot
-from strata.report.drawing import SHOWN
+from strata.report.drawing import BAR, LIMIT_STYLE, SHOWN
+from strata.results import replacing
+from strata.water import potential_density
 
 STYLE: dict[str, Any] = {
     "font.size": 9.0,
@@ -35,6 +40,7 @@ STYLE: dict[str, Any] = {
     "path.simplify": True,
 }
 WIDTH = 9.6  # inches
+_DPI = 150
 
 
 @contextmanager
@@ -42,6 +48,19 @@ def house_style() -> Iterator[None]:
     """Draw in the style of the dossier."""
     with rc_context(STYLE):  # type: ignore[arg-type]
         yield
+
+
+def save(figure: Figure, path: Path) -> None:
+    """Write a figure as PNG that carries the caution, by which strata knows its own files.
+
+    Raises
+    ------
+    strata.InputError
+        If the file cannot be written.
+    """
+    words = {"Description": CAUTION, "Software": f"strata {__version__}"}
+    with replacing(path) as partial:
+        figure.savefig(partial, format="png", dpi=_DPI, metadata=words)
 
 
 def grid(rows: int, columns: int, height: float, **options: Any) -> tuple[Figure, np.ndarray]:
@@ -253,44 +272,82 @@ def plants(results: Mapping[str, xr.Dataset]) -> Figure:
     return figure
 
 
-_CAST_NAMES = {
-    "temperature": "temperature",
-    "salinity": "salinity",
-    "methane": "CH4",
-    "carbon_dioxide": "CO2",
-    "oxygen": "O2",
+#: Gas -> variable of a result.
+_GASES = {
+    "CH4": "methane",
+    "CO2": "carbon_dioxide",
+    "N2": "nitrogen",
+    "O2": "oxygen",
+    "H2S": "hydrogen_sulfide",
 }
 
 
 def today(result: xr.Dataset, lake: Lake) -> Figure:
-    """Return today's column: profiles with the casts' readings, gas pressure, stability."""
-    figure, axes = grid(1, 5, 4.2, sharey=True, wspace=0.14)
+    """Return today's column: profiles and gas with what the casts read, and stability."""
+    figure, axes = grid(2, 4, 7.6, sharey=True, wspace=0.12, hspace=0.24)
+    (heat, salt, weight, stable), (methane, carbon, pressing, saturated) = axes
     first = result.isel(time=slice(0, 1))
-    row = axes[0]
-    shown = ("temperature", "salinity", "methane", "carbon_dioxide")
-    for ax, variable in zip(row, shown, strict=False):
-        plot.profiles(first, variable, ax, (0,), _reading(lake, _CAST_NAMES[variable]))
+    first = first.assign(potential_density=_potential_density(first, lake))
+    sampled = margins.of_samples(lake)
+    for ax, variable, reading in (
+        (heat, "temperature", _reading(lake, "temperature")),
+        (salt, "salinity", _reading(lake, "salinity")),
+        (weight, "potential_density", None),
+        (methane, "methane", _reading(lake, "CH4")),
+        (carbon, "carbon_dioxide", _reading(lake, "CO2")),
+        (saturated, "saturation", sampled["saturation"]),
+    ):
+        plot.profiles(first, variable, ax, (0,), reading)
+    plot.stability(first, stable)
+    plot.gas_pressure(first, pressing)
+    plot.measured_points(_scaled(sampled["gas_pressure"], BAR), pressing)
+    saturated.axvline(1.0, **LIMIT_STYLE)
+    saturated.set_xlim(0.0, 1.05 * max(1.0, float(sampled["saturation"].value.max())))
+    for ax in axes.flat:
+        ax.axhspan(*_main_extent(first), color="0.85", zorder=0, label="main gradient")
+    for ax in axes[:, 1:].flat:
         ax.set_ylabel("")
-    plot.gas_pressure(first, row[4])
-    row[4].set_ylabel("")
-    row[0].set_ylabel("depth [m]")
-    for ax in row:
-        for found in _main_extent(first):
-            ax.axhspan(*found, color="0.85", zorder=0)
-    handles, labels = (
-        of_points + of_pressure
-        for of_points, of_pressure in zip(
-            row[2].get_legend_handles_labels(), row[4].get_legend_handles_labels(), strict=True
-        )
+    named: dict[str, Any] = {}
+    for ax in (heat, pressing):
+        handles, labels = ax.get_legend_handles_labels()
+        named |= dict(zip(labels, handles, strict=True))
+    figure.legend(
+        named.values(),
+        named,
+        loc="upper left",
+        ncols=len(named),
+        bbox_to_anchor=(0.06, 1.0),
+        columnspacing=1.1,
+        handlelength=1.6,
+        handletextpad=0.5,
     )
-    figure.legend(handles, labels, loc="upper left", ncols=7, bbox_to_anchor=(0.06, 1.0))
     return figure
 
 
-def _main_extent(result: xr.Dataset) -> list[tuple[float, float]]:
+def _potential_density(result: xr.Dataset, lake: Lake) -> xr.DataArray:
+    """Return what the water would weigh at the surface [kg m-3]."""
+    gases = {gas: result[name].values for gas, name in _GASES.items()}
+    found = potential_density(
+        result["temperature"].values,
+        result["salinity"].values,
+        result["pressure"].values,
+        gases,
+        lake.site.air_pressure,
+        lake.site.haline_contraction,
+        lake.site.co2_molar_volume,
+    )
+    return result["density"].copy(data=found)
+
+
+def _scaled(profile: Profile, factor: float) -> Profile:
+    """Return readings in another unit."""
+    return Profile(profile.depth, profile.value / factor, profile.error / factor)
+
+
+def _main_extent(result: xr.Dataset) -> tuple[float, float]:
     middle = float(result["gradient_depth"][0])
     half = 0.5 * float(result["gradient_thickness"][0])
-    return [(middle - half, middle + half)]
+    return middle - half, middle + half
 
 
 def _reading(lake: Lake, name: str) -> Profile | None:

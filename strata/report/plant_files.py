@@ -9,7 +9,6 @@ from pathlib import Path
 from typing import Any
 
 import xarray as xr
-from matplotlib.figure import Figure
 
 from strata import __version__
 from strata.caution import CAUTION
@@ -17,10 +16,8 @@ from strata.plant.account import Account
 from strata.report import riser
 from strata.report import sweeps as drawn
 from strata.report.diagram import diagram
-from strata.report.figures import house_style
+from strata.report.figures import house_style, save
 from strata.results import replacing
-
-_DPI = 150
 
 
 def file_names(account: Account, folder: Path) -> dict[str, Path]:
@@ -78,17 +75,10 @@ def write(
         if "wash" in sweeps:
             figures["wash.png"] = drawn.wash(sweeps["wash"], account)
         for name, figure in figures.items():
-            _save_figure(figure, names[name])
+            save(figure, names[name])
     for name, sweep in sweeps.items():
         _save_sweep(sweep, names[f"{name}.nc"], f"{title}: {name}")
     return list(names.values())
-
-
-def _save_figure(figure: Figure, path: Path) -> None:
-    """Write a figure as PNG."""
-    words = {"Description": CAUTION, "Software": f"strata {__version__}"}
-    with replacing(path) as partial:
-        figure.savefig(partial, format="png", dpi=_DPI, metadata=words)
 
 
 def _save_sweep(sweep: xr.Dataset, path: Path, title: str) -> None:

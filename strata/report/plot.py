@@ -16,6 +16,7 @@ from strata.report.by_depth import (
     measured_points,
     profiles,
     section,
+    stability,
 )
 from strata.report.by_pressure import (
     separator_sweep,
@@ -55,6 +56,7 @@ __all__ = [
     "record_of",
     "section",
     "separator_sweep",
+    "stability",
     "through_time",
     "trap_depth",
     "worst_of_year",

@@ -335,7 +335,11 @@ def today_caption(result: xr.Dataset) -> tuple[str, str]:
         "main "
         f"gradient (grey band) lies at {float(result['gradient_depth'][0]):.0f} m."
     )
-    return caption, f"Profiles of the start with the casts' readings as points. {caption}"
+    alt = (
+        "Profiles of temperature, salinity, density, stability, CH4, free CO2, gas pressure "
+        f"and saturation at the start, the casts' readings as points. {caption}"
+    )
+    return caption, alt
 
 
 def separator_caption(sweep: xr.Dataset) -> tuple[str, str]:

@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from strata.column import kernel
 from strata.column.column import Column
-from strata.column.streams import Give, Path, Source, Surroundings, follow
+from strata.column.streams import Give, Path, Source, Surroundings, Take, follow
 from strata.column.tracers import METHANE, SALINITY, TEMPERATURE, TRACERS
 from strata.lake.site import Lake
 from strata.plant import timetable
@@ -37,7 +37,7 @@ _BY_SHARE = ("DIC", "CH4", "N2", "O2", "H2S")
 class Working:
     """What the plants do during a visit, as the column wants it."""
 
-    takes: list[Array]
+    takes: list[Take]
     gives: list[Give]
     reference: Array  # (takes, m)
 
@@ -76,7 +76,7 @@ class Fleet:
     def work(self, column: Column, around: Surroundings, day: date) -> Working:
         """Return what the plants take and give from a day on, by the column as it is."""
         self.running = []
-        takes: list[Array] = []
+        takes: list[Take] = []
         gives: list[Give] = []
         reference: list[Array] = []
         for planned in self.plants:
@@ -88,11 +88,12 @@ class Fleet:
             if plant.wash is not None:
                 intake = [Intake(plant.wash.water_depth, 1.0)]
                 draws.append(_draw(column, intake, load * plant.wash.water_flow))
-            means = [draw @ column.values / draw.sum() for draw in draws]
-            feeds = [
-                stream_of(mean, float(draw.sum()))
-                for mean, draw in zip(means, draws, strict=True)
+            flows = [float(take.draw.sum()) for take in draws]
+            means = [
+                take.draw @ column.values / flow
+                for take, flow in zip(draws, flows, strict=True)
             ]
+            feeds = [stream_of(*fed) for fed in zip(means, flows, strict=True)]
             if not timetable.runs_on_feed(plant, feeds[0].of("CH4")):
                 continue
             operation = operate(
@@ -139,7 +140,9 @@ class Fleet:
                 )
                 added += more
             running.gives.append(
-                Give(kernel.RETURN, water.flow, added, path.given, path.entrained, link)
+                Give(
+                    kernel.RETURN, water.flow, added, path.given, path.entrained, link, source
+                )
             )
             running.paths.append(path)
             running.excess.append(excess_density(source, around))
@@ -259,9 +262,11 @@ def _series_of(running: _Running) -> dict[str, float]:
     }
 
 
-def _draw(column: Column, intakes: Iterable[Intake], flow: float) -> Array:
-    """Return what intakes draw from each layer [m3 s-1]."""
-    return flow * plant_weights(column.basin.faces, column.seen.stability[1:-1], intakes, flow)
+def _draw(column: Column, intakes: Iterable[Intake], flow: float) -> Take:
+    """Return what intakes draw, a flow in all [m3 s-1]."""
+    sinks = [(intake.depth, flow * intake.share) for intake in intakes if intake.share > 0.0]
+    weights = plant_weights(column.basin.faces, column.seen.stability[1:-1], intakes, flow)
+    return Take(flow * weights, sinks)
 
 
 def stream_of(mean: Array, flow: float) -> WaterStream:

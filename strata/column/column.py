@@ -15,7 +15,7 @@ from strata.column.air import air_table
 from strata.column.inflows import Inflow, even_shares
 from strata.column.laws import bed_coefficient, law_of, staircase_window
 from strata.column.slow import SlowProperties, slow_properties
-from strata.column.streams import Give, Source, Surroundings, stack
+from strata.column.streams import Give, Source, Surroundings, Take, stack
 from strata.column.supply import supply_of
 from strata.column.surface import wind_power
 from strata.column.tracers import (
@@ -222,8 +222,14 @@ class Column:
             weight=weight,
             start=start,
             pressure=self.face_pressure,
+            middle_pressure=self.pressure,
             physics=np.array(
-                [self.gravity, lake.site.haline_contraction, mixing.convection_efficiency]
+                [
+                    self.gravity,
+                    lake.site.haline_contraction,
+                    mixing.convection_efficiency,
+                    mixing.overshoot,
+                ]
             ),
             mixing=np.array([law.power, law.least, law.most]),
             turbulent=law.coefficient,
@@ -374,7 +380,7 @@ class Column:
     def advance(
         self,
         weather: Weather,
-        takes: Sequence[Array],
+        takes: Sequence[Take],
         gives: Sequence[Give],
         steps: int,
         dt: float,
@@ -386,8 +392,8 @@ class Column:
         ----------
         weather : Weather
             Held throughout.
-        takes : sequence of ndarray, shape (n,)
-            Withdrawal of each intake from the layers [m3 s-1].
+        takes : sequence of Take
+            Withdrawals.
         gives : sequence of Give
             Springs, rivers and returns.
         steps : int
@@ -442,6 +448,10 @@ class Column:
         )
         if code == kernel.NOT_FINITE:
             raise self._not_a_number(layer, tracer)
+        if code == kernel.NOT_FOLLOWED:
+            raise ComputationError(
+                f"the plume of {gives[layer].source.name} could not be followed"
+            )
         if code == kernel.OVERDRAWN:
             raise ComputationError(
                 f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a"

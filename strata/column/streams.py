@@ -66,6 +66,14 @@ class Path:
 
 
 @dataclass(frozen=True)
+class Take:
+    """One withdrawal from the column."""
+
+    draw: Array  # (n,) from each layer, m3/s
+    sinks: Sequence[tuple[float, float]] = ()  # depth [m] and flow [m3/s] of what draws it
+
+
+@dataclass(frozen=True)
 class Give:
     """One stream into the column, as the kernel holds it."""
 
@@ -75,6 +83,7 @@ class Give:
     given: Array  # (n,)
     entrained: Array  # (n,)
     link: Mapping[int, Array] = field(default_factory=dict)  # take -> (m,) share passed on
+    source: Source | None = None  # whose plume is followed anew within a visit
 
 
 def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
@@ -126,6 +135,8 @@ class Stacked:
     water: Array
     entrained: Array
     given: Array
+    sink: Array
+    mouth: Array
     kind: NDArray[np.int64]
     take_span: NDArray[np.int64]
     plume_span: NDArray[np.int64]
@@ -133,7 +144,7 @@ class Stacked:
 
 
 @compiled
-def _fill_spans(shares, spans):
+def fill_spans(shares, spans):
     """Fill the first column that is not zero, and the one behind the last, of every row."""
     for row in range(shares.shape[0]):
         spans[row, 0], spans[row, 1] = 0, 0
@@ -144,16 +155,26 @@ def _fill_spans(shares, spans):
                 spans[row, 1] = column + 1
 
 
+def _mouth(source: Source | None) -> tuple[float, ...]:
+    """Return what the kernel must know of a source to follow it; nothing of none."""
+    if source is None:
+        return (0.0,) * 9
+    ports = (source.ports, source.depth, source.port_diameter, source.port_spacing)
+    water = (source.temperature, source.salinity, source.gas_mass, source.gas_volume)
+    return (*ports, math.radians(source.port_angle), *water)
+
+
 def _spans(shares: Array) -> NDArray[np.int64]:
     """Return where the entries of each row that are not zero begin and end."""
     spans = np.empty((len(shares), 2), dtype=np.int64)
-    _fill_spans(shares, spans)
+    fill_spans(shares, spans)
     return spans
 
 
-def stack(takes: Sequence[Array], gives: Sequence[Give], layers: int, tracers: int) -> Stacked:
-    """Return takes [(n,) m3/s each] and gives as arrays; no take or give is an empty axis."""
-    take = np.array(takes).reshape(len(takes), layers)
+def stack(takes: Sequence[Take], gives: Sequence[Give], layers: int, tracers: int) -> Stacked:
+    """Return takes and gives as arrays; no take or give is an empty axis."""
+    take = np.array([one.draw for one in takes]).reshape(len(takes), layers)
+    sinks = [(row, *sink) for row, one in enumerate(takes) for sink in one.sinks]
     entrained = np.array([give.entrained for give in gives]).reshape(len(gives), layers)
     given = np.array([give.given for give in gives]).reshape(len(gives), layers)
     link = np.zeros((len(gives), len(takes), tracers))
@@ -169,6 +190,8 @@ def stack(takes: Sequence[Array], gives: Sequence[Give], layers: int, tracers: i
         water=np.array([give.water for give in gives], dtype=np.float64),
         entrained=entrained,
         given=given,
+        sink=np.array(sinks, dtype=np.float64).reshape(-1, 3),
+        mouth=np.array([_mouth(give.source) for give in gives]).reshape(-1, 9),
         kind=np.array([give.kind for give in gives], dtype=np.int64),
         take_span=_spans(take),
         plume_span=_spans(entrained),

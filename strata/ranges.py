@@ -45,8 +45,9 @@ def within(
     if good.all():
         return array
     worst = float(np.atleast_1d(array)[~np.atleast_1d(good)][0])
+    of = f" {unit}" if unit else ""
     raise OutOfRangeError(
-        f"{name} is {worst:g} {unit}; {low:g} to {high:g} {unit} is allowed ({source})"
+        f"{name} is {worst:g}{of}; {low:g} to {high:g}{of} is allowed ({source})"
     )
 
 

@@ -52,6 +52,7 @@ ALLOWED = {
     "studies": SMALL | PHYSICS | DERIVED | {"clock", "coupling", "projection"},
     "report": SMALL | PHYSICS | DERIVED | {"caution"},
     "cli": SMALL | DERIVED | {"caution", "inputs", "projection", "studies", "report"},
+    "__main__": {"cli"},
 }
 #: Third-party packages that belong to one room alone.
 AT_HOME = {

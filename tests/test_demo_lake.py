@@ -2,6 +2,7 @@
 
 from dataclasses import replace
 from datetime import timedelta
+from functools import cache
 
 import numpy as np
 import pytest
@@ -45,6 +46,22 @@ def under_plan(lake):
             plan = strata.load_plan(strata.demo_files() / f"{name}.toml", lake)
             found[name] = strata.project(lake, plan, years=30, step_days=5)
         return found[name]
+
+    return run
+
+
+@pytest.fixture(scope="module")
+def solved(lake):
+    """Return a function that projects a plan over 50 years, plants solved monthly and daily."""
+    every_day = [lake.site.start + timedelta(days=n) for n in range(50 * 366)]
+
+    @cache
+    def run(name):
+        plan = strata.load_plan(strata.demo_files() / f"{name}.toml", lake)
+        monthly = strata.project(lake, plan, years=50)
+        with pytest.MonkeyPatch.context() as patch:
+            patch.setattr(Fleet, "dates", lambda *_: every_day)
+            return monthly, strata.project(lake, plan, years=50)
 
     return run
 
@@ -134,17 +151,22 @@ def test_halving_the_step_changes_what_is_judged_by_less_than_a_hundredth(lake):
 
 
 @pytest.mark.long
-def test_the_deep_return_delivers_as_much_when_its_plants_are_solved_every_day(
-    lake, monkeypatch
-):
-    # its water spreads in a nearly neutral pool: a plume held for a month gave 5 % more
-    plan = strata.load_plan(strata.demo_files() / "deep-return.toml", lake)
-    monthly = strata.project(lake, plan, years=50)
-    every_day = [lake.site.start + timedelta(days=n) for n in range(50 * 366)]
-    monkeypatch.setattr(Fleet, "dates", lambda *_: every_day)
-    daily = strata.project(lake, plan, years=50)
-    for name, tolerance in (("methane_recovered", 0.015), ("methane_in_place", 0.005)):
-        assert float(monthly[name][-1]) == pytest.approx(float(daily[name][-1]), rel=tolerance)
+@pytest.mark.parametrize(
+    ("name", "quantity", "tolerance"),
+    [
+        # its water spreads in a nearly neutral pool: plumes held for a month gave 5 % more
+        ("deep-return", "methane_recovered", 0.015),
+        ("deep-return", "methane_in_place", 0.005),
+        # the worn gradient stopped at 246 m with plumes held for a month; it goes on to 312 m
+        ("surface-return", "gradient_depth", 0.005),
+        ("surface-return", "gradient_strength", 0.02),
+    ],
+)
+def test_plants_solved_every_day_come_to_the_same(solved, name, quantity, tolerance):
+    monthly, daily = solved(name)
+    assert float(monthly[quantity][-1]) == pytest.approx(
+        float(daily[quantity][-1]), rel=tolerance
+    )
 
 
 def test_a_run_gives_the_same_bytes_twice(lake):

@@ -1,0 +1,5 @@
+"""``python -m strata``: the command line."""
+
+from strata.cli import main
+
+main()

@@ -52,7 +52,7 @@ def under_plan(lake):
 
 @pytest.fixture(scope="module")
 def solved(lake):
-    """Return a function that projects a plan over 50 years, plants solved monthly and daily."""
+    """Return a function that projects a plan for 50 years, plants solved monthly or daily."""
     every_day = [lake.site.start + timedelta(days=n) for n in range(50 * 366)]
 
     @cache

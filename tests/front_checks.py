@@ -20,7 +20,7 @@ def carry(values, flow, volume, conductance, inflow, dt, steps):
         gain[-1] += flow[-1] * inflow * dt
         advect(values, flow, volume, weight, start, dt, gain, edge, flux)
         if conductance is not None:
-            diffuse(values, conductance, volume, dt, work)
+            diffuse(values, conductance, volume, np.zeros_like(values), dt, work)
 
 
 def layer_means_of(function, faces, points=40):

@@ -6,6 +6,7 @@ from column_checks import heat_lost_in_autumn
 from front_checks import front_run, graded, layer_means_of
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from scipy.linalg import expm
 from scipy.special import j0, jn_zeros
 
 from strata.column.transport import DIFFUSION_NUMBER, advect, diffuse, face_weights
@@ -58,9 +59,9 @@ def test_diffusion_in_a_closed_cylinder_follows_the_cosine_solution():
         steps = 100 * (count // 25)  # second order in time and in space
         values = layer_means_of(lambda z: 1 + np.cos(np.pi * z / height), faces)[:, None]
         conductance = np.full((count + 1, 1), kappa / (height / count))
-        work = np.empty((4, *values.shape))
+        work, still = np.empty((4, *values.shape)), np.zeros_like(values)
         for _ in range(steps):
-            diffuse(values, conductance, np.diff(faces), time / steps, work)
+            diffuse(values, conductance, np.diff(faces), still, time / steps, work)
         fade = np.exp(-kappa * (np.pi / height) ** 2 * time)
         exact = layer_means_of(
             lambda z, fade=fade: 1 + fade * np.cos(np.pi * z / height), faces
@@ -86,9 +87,9 @@ def test_diffusion_in_a_basin_of_linear_area_follows_the_bessel_solution():
         time = height**2 / kappa / root**2
         steps = 240 * (count // 25)
         conductance = (x * kappa / (height / count))[:, None].copy()
-        work = np.empty((4, *values.shape))
+        work, still = np.empty((4, *values.shape)), np.zeros_like(values)
         for _ in range(steps):
-            diffuse(values, conductance, volume, time / steps, work)
+            diffuse(values, conductance, volume, still, time / steps, work)
         exact = np.exp(-1) * j0(root * (1 - middle / height))
         inner = slice(0, count - 2)  # the tip holds no water to speak of
         errors.append(np.abs(values[inner, 0] - exact[inner]).max())
@@ -121,7 +122,7 @@ def test_random_fields_make_no_new_extreme_and_lose_nothing(seed):
     conductance = 10 ** rng.uniform(-6, 6, (count + 1, 3))
     values = before.copy()
     work = np.empty((4, *values.shape))
-    diffuse(values, conductance, volume, 1.0, work)
+    diffuse(values, conductance, volume, still, 1.0, work)
     np.testing.assert_allclose(volume @ values, held, rtol=1e-11)
     assert np.all(values >= low - 1e-12 * span)
     assert np.all(values <= high + 1e-12 * span)
@@ -133,7 +134,7 @@ def test_a_pulse_in_the_top_layer_falls_off_downward(number):
     values = np.zeros((40, 1))
     values[0] = 1.0
     conductance = np.full((41, 1), number)
-    diffuse(values, conductance, np.ones(40), 1.0, np.empty((4, 40, 1)))
+    diffuse(values, conductance, np.ones(40), np.zeros((40, 1)), 1.0, np.empty((4, 40, 1)))
     assert np.all(np.diff(values[:, 0]) <= 1e-15)
     assert np.all(values >= 0.0)
 
@@ -142,3 +143,28 @@ def test_a_cooling_lake_loses_the_same_heat_in_steps_of_a_day_and_of_hours():
     daily, hourly = heat_lost_in_autumn(1.0), heat_lost_in_autumn(0.125)
     print(f"heat lost in steps of 1 d over that in steps of 3 h: {daily / hourly:.4f}")
     assert daily == pytest.approx(hourly, rel=0.01)  # first order in the step: 0.3 % a day
+
+
+def test_what_sources_give_is_spread_as_it_comes_to_second_order():
+    # against the exponential of the same layers: u' = A u + s
+    count, time = 20, 30.0
+    conductance = np.full((count + 1, 1), 1.0)
+    inner = np.full(count - 1, 1.0)
+    matrix = np.diag(inner, 1) + np.diag(inner, -1)
+    matrix -= np.diag(matrix.sum(axis=1))
+    source = np.zeros((count, 1))
+    source[-1], source[5] = 1.0, -0.3
+    whole = np.zeros((count + 1, count + 1))
+    whole[:count, :count], whole[:count, count] = matrix, source[:, 0]
+    exact = expm(time * whole)[:count, count]
+    errors = []
+    for steps in (30, 60, 120):
+        values = np.zeros((count, 1))
+        work = np.empty((4, count, 1))
+        for _ in range(steps):
+            diffuse(values, conductance, np.ones(count), source, time / steps, work)
+        assert values.sum() == pytest.approx(0.7 * time, rel=1e-12)
+        errors.append(np.abs(values[:, 0] - exact).max())
+    orders = np.log2(np.array(errors[:-1]) / errors[1:])
+    print("observed order of sources in diffusion:", orders, errors)
+    assert orders.min() > 1.8

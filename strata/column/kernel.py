@@ -215,10 +215,7 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn
     takes, gives = held.take.shape[0], held.water.shape[0]
     for i in range(count):
         for m in range(tracers):
-            gain[i, m] = dt * grid.steady[i, m]
-    for m in range(tracers):
-        state.books[BED, m] += dt * held.from_bed[m]
-        state.books[SOURCES, m] += dt * held.from_sources[m]
+            gain[i, m] = 0.0
     for j in range(takes):
         for m in range(tracers):
             withdrawn[j, m] = 0.0
@@ -362,7 +359,10 @@ def advance(state, grid, held, seen, steps, dt):
                 values, seen.flow, grid.volume, grid.weight, grid.start, part, gain, edge, flux
             )
         _conduct(values, grid, held, seen, conductance, lift)
-        diffuse(values, conductance, grid.volume, dt, work)
+        diffuse(values, conductance, grid.volume, grid.steady, dt, work)
+        for m in range(tracers):
+            state.books[BED, m] += dt * held.from_bed[m]
+            state.books[SOURCES, m] += dt * held.from_sources[m]
         _load(state, grid, held, gas_mass, gas_volume)
         state.mixed_depth[0] = deepen(
             values,

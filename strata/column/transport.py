@@ -134,33 +134,35 @@ def advect(values, flow, volume, weight, start, dt, gain, edge, flux):
 
 
 @compiled
-def _prepare(values, conductance, volume, part, ratio, pivot, gain):
-    """Eliminate downward in ``volume + part * conduction``, and fill what conduction brings.
+def _prepare(values, conductance, volume, source, part, ratio, pivot, gain):
+    """Eliminate downward in ``volume + part * conduction``, and fill what is brought.
 
     ``ratio`` and ``pivot`` are for :func:`_substitute`; ``gain`` is the amount that conduction
-    over ``part`` seconds brings to each layer from the values as they are.
+    and sources bring to each layer over ``part`` seconds from the values as they are.
     """
     count, tracers = values.shape
     for m in range(tracers):
         below = part * conductance[1, m]
         pivot[0, m] = 1.0 / (volume[0] + below)
         ratio[0, m] = below * pivot[0, m]
-        gain[0, m] = below * (values[1, m] - values[0, m])
+        gain[0, m] = part * source[0, m] + below * (values[1, m] - values[0, m])
     for i in range(1, count - 1):
         for m in range(tracers):
             above = part * conductance[i, m]
             below = part * conductance[i + 1, m]
             pivot[i, m] = 1.0 / (volume[i] + above * (1.0 - ratio[i - 1, m]) + below)
             ratio[i, m] = below * pivot[i, m]
-            gain[i, m] = below * (values[i + 1, m] - values[i, m]) - above * (
-                values[i, m] - values[i - 1, m]
+            gain[i, m] = (
+                part * source[i, m]
+                + below * (values[i + 1, m] - values[i, m])
+                - above * (values[i, m] - values[i - 1, m])
             )
     i = count - 1
     for m in range(tracers):
         above = part * conductance[i, m]
         pivot[i, m] = 1.0 / (volume[i] + above * (1.0 - ratio[i - 1, m]))
         ratio[i, m] = 0.0
-        gain[i, m] = -above * (values[i, m] - values[i - 1, m])
+        gain[i, m] = part * source[i, m] - above * (values[i, m] - values[i - 1, m])
 
 
 @compiled
@@ -179,13 +181,15 @@ def _substitute(conductance, part, ratio, pivot, change):
 
 
 @compiled
-def diffuse(values, conductance, volume, dt, work):
-    """Spread every tracer for one step, second order in time where that stays positive.
+def diffuse(values, conductance, volume, source, dt, work):
+    """Spread every tracer, and what sources give, for one step.
 
-    TR-BDF2 [B85] while the largest diffusion number is at most 1.5, where no pulse of a layer
-    undershoots and one in the top layer falls off downward; backward Euler beyond.
+    TR-BDF2 [B85], of second order, while the largest diffusion number is at most 1.5, where no
+    pulse of a layer undershoots and one in the top layer falls off downward; backward Euler
+    beyond.
     ``conductance`` (n + 1, m) is area times diffusivity over distance [m3 s-1] at the faces;
-    only inner ones are used.  ``work`` (4, n, m) is workspace.
+    only inner ones are used.  ``source`` (n, m) is the amount that each layer is given per
+    second while it is spread; ``work`` (4, n, m) is workspace.
     """
     count, tracers = values.shape
     ratio, pivot, gain, change = work[0], work[1], work[2], work[3]
@@ -197,7 +201,7 @@ def diffuse(values, conductance, volume, dt, work):
         largest = max(largest, most / min(volume[f - 1], volume[f]))
     euler = largest * dt > DIFFUSION_NUMBER
     part = dt if euler else 0.5 * GAMMA * dt
-    _prepare(values, conductance, volume, part, ratio, pivot, gain)
+    _prepare(values, conductance, volume, source, part, ratio, pivot, gain)
     first = 1.0 if euler else 2.0
     for i in range(count):
         for m in range(tracers):

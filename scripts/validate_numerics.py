@@ -50,8 +50,9 @@ TAIL = """\
   does in daily steps; where K follows stability the column gains from steps of five days on.
   Its error at a day is that of its layers, so a survey of a smooth lake may take long steps.
 - **First order in time** where parts of a step take turns: streams and advection, then
-  diffusion with the sources of the bed, then the surface. A spring that enters one thin layer leaves an error of the order
-  of its flow in a step over that layer. `--check-step` shows what halving the step changes.
+  diffusion with the sources of the bed, then the surface. A spring that enters one thin layer
+  leaves an error of the order of its flow in a step over that layer. `--check-step` shows
+  what halving the step changes.
 - **A saw-tooth under the open surface** where nothing at all mixes: 3 % of the step between
   two layers, some 15 layers deep. Any diffusivity of a lake removes it.
 - **The staircase by pairs of layers** (`staircase_window_m` = 0) is not independent of layers

@@ -35,6 +35,11 @@ class Comparison:
         return any(v.breached for name, v in self.verdicts.items() if name != NO_PLAN)
 
 
+def _plants(plan: Plan | None) -> int:
+    """Return how many plants a plan has."""
+    return 0 if plan is None else len(plan.plants)
+
+
 def compare(
     lake: Lake,
     plans: Sequence[Plan],
@@ -80,7 +85,11 @@ def compare(
     common = {"years": years, "step_days": step_days, "seed": seed, "tags": tags}
     jobs = [pool.projection(lake, plan, **common) for plan in cases[:-1]]
     jobs.append(pool.projection(lake, cases[-1], **common, checkpoint=checkpoint))
-    results = dict(zip(names, pool.run(jobs, progress, workers), strict=True))
+    # many plants take longest: begun first, they do not keep a processor waiting at the end
+    order = sorted(range(len(cases)), key=lambda k: -_plants(cases[k]))
+    ran = pool.run([jobs[k] for k in order], progress, workers)
+    done = {names[k]: result for k, result in zip(order, ran, strict=True)}
+    results = {name: done[name] for name in names}
     verdicts = {}
     if limits is not None:
         baseline = results[NO_PLAN]

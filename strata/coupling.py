@@ -12,7 +12,7 @@ from datetime import date
 import numpy as np
 from numpy.typing import NDArray
 
-from strata.column import kernel
+from strata.column import ledger
 from strata.column.column import Column
 from strata.column.streams import Give, Path, Source, Surroundings, Take, follow
 from strata.column.tracers import METHANE, SALINITY, TEMPERATURE, TRACERS
@@ -141,7 +141,7 @@ class Fleet:
                 added += more
             running.gives.append(
                 Give(
-                    kernel.RETURN, water.flow, added, path.given, path.entrained, link, source
+                    ledger.RETURN, water.flow, added, path.given, path.entrained, link, source
                 )
             )
             running.paths.append(path)

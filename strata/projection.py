@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 
 from strata import checkpoint as checkpoint_file
 from strata import clock, results
-from strata.column import kernel
+from strata.column import ledger
 from strata.column.column import Column
 from strata.column.start import first_day
 from strata.column.tracers import followed
@@ -248,7 +248,7 @@ def _record(
         upward_flow=notes["flow"],
         diffusivity=notes["diffusivity"],
         mixed_layer_depth=notes["mixed"],
-        ledger_terms=("start", *kernel.LEDGER_TERMS),
+        ledger_terms=("start", *ledger.LEDGER_TERMS),
         ledger=notes["ledger"],
         ledger_error=notes["error"],
         plants=plants,

@@ -19,7 +19,7 @@ from column_checks import (
 )
 
 from strata.column.column import REFERENCE_DENSITY, Column
-from strata.column.kernel import LEDGER_TERMS
+from strata.column.ledger import LEDGER_TERMS
 from strata.column.laws import MIXING_EFFICIENCY, bed_coefficient, law_of, staircase_window
 from strata.column.mixing import turbulent_diffusivity
 from strata.column.tracers import DIC, METHANE, TEMPERATURE, TRACERS, index

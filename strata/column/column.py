@@ -10,7 +10,7 @@ from dataclasses import fields, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from strata.column import gases, kernel
+from strata.column import gases, kernel, ledger
 from strata.column.air import air_table
 from strata.column.inflows import Inflow, even_shares
 from strata.column.laws import bed_coefficient, law_of, staircase_window
@@ -85,7 +85,7 @@ class Column:
             values=values,
             hydrogen=self.hydrogen,
             mixed_depth=np.array([self._first_mixed_depth(values)]),
-            books=np.zeros((len(kernel.LEDGER_TERMS), width)),
+            books=np.zeros((len(ledger.LEDGER_TERMS), width)),
             taken=np.zeros((0, width)),
         )
         self.start = self.inventory()
@@ -367,10 +367,10 @@ class Column:
                 port_spacing=spring.port_spacing,
             )
             shares = None if spring.spread is None else even_shares(spring.spread, self.basin)
-            found.append(Inflow(kernel.SPRINGS, source, carried, shares))
+            found.append(Inflow(ledger.SPRINGS, source, carried, shares))
         for river in self.lake.rivers:
             source, carried = self._inflow_source("river", river, river.temperature, 0.0)
-            found.append(Inflow(kernel.RIVERS, source, carried))
+            found.append(Inflow(ledger.RIVERS, source, carried))
         return found
 
     def natural(self, around: Surroundings) -> list[Give]:

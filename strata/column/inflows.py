@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from strata.column import kernel
+from strata.column import ledger
 from strata.column.streams import Give, Source, Surroundings, follow
 from strata.compiled import broadcast
 from strata.lake.basin import Basin
@@ -20,7 +20,7 @@ Array = NDArray[np.float64]
 class Inflow:
     """A spring or a river with what it carries."""
 
-    kind: int  # row of the ledger: SPRINGS or RIVERS of the kernel
+    kind: int  # row of the ledger: SPRINGS or RIVERS
     source: Source
     carried: Array  # (m,) amount per second
     spread: Array | None = None  # (n,) share of each layer, where it seeps over an interval
@@ -33,7 +33,7 @@ class Inflow:
         """
         if self.spread is not None:
             given, entrained = self.spread, np.zeros_like(self.spread)
-        elif self.kind == kernel.RIVERS:
+        elif self.kind == ledger.RIVERS:
             given, entrained = plunge(self.source, around, mixing.plunge_mixing)
         else:
             path = follow(self.source, around, mixing.overshoot)

@@ -10,7 +10,9 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from strata.column.flows import exchange_with_streams, fit_plants, route
 from strata.column.gases import gas_load, refresh_co2
+from strata.column.ledger import BED, REACTIONS, SOURCES, SURFACE
 from strata.column.mixing import (
     pair_stability,
     pool,
@@ -18,35 +20,15 @@ from strata.column.mixing import (
     turbulent_diffusivity,
 )
 from strata.column.reactions import decay, react, reduce_carbon
-from strata.column.streams import fill_spans
 from strata.column.surface import deepen
-from strata.column.tracers import DIC, METHANE, SALINITY, TEMPERATURE
+from strata.column.tracers import DIC, METHANE, TEMPERATURE
 from strata.column.transport import advect, diffuse
 from strata.compiled import compiled
-from strata.water.intrusion import SINK_COEFFICIENT, layer_shares
-from strata.water.plume import follow_plume
 
 Array = NDArray[np.float64]
 
 #: Why the kernel came back.
 DONE, FEED_CHANGED, NOT_FINITE, OVERDRAWN, NOT_FOLLOWED = range(5)
-
-#: Terms of the ledger, in the order of its rows; each signed, into the lake positive.
-LEDGER_TERMS = (
-    "surface",
-    "rain",
-    "evaporation",
-    "outlet",
-    "rivers",
-    "springs",
-    "bed",
-    "reactions",
-    "intake",
-    "return",
-    "sources",
-)
-SURFACE, RAIN, EVAPORATION, OUTLET, RIVERS, SPRINGS = range(6)
-BED, REACTIONS, INTAKE, RETURN, SOURCES = range(6, len(LEDGER_TERMS))
 
 #: Seconds after which intakes and returns are fitted to the column anew.  In water that is
 #: nearly neutral a return changes its own surroundings within days: held for a month it keeps
@@ -129,136 +111,6 @@ class Seen(NamedTuple):
 
 
 @compiled
-def face_flow(held, flow):
-    """Fill the upward flow through the faces by continuity [m3 s-1].
-
-    The lake level is fixed: what enters below a face and does not leave below it passes it.
-    """
-    count = held.take.shape[1]
-    for f in range(count + 1):
-        flow[f] = 0.0
-    for j in range(held.take.shape[0]):
-        for i in range(count):
-            flow[i] -= held.take[j, i]
-    for k in range(held.water.shape[0]):
-        total = held.water[k] + held.entrained[k].sum()
-        for i in range(count):
-            flow[i] += held.given[k, i] * total - held.entrained[k, i]
-    for i in range(count - 1, -1, -1):
-        flow[i] += flow[i + 1]
-
-
-@compiled
-def fit_plants(values, gas_mass, gas_volume, grid, held, stability):
-    """Let intakes draw, and returns rise or sink, by the column as it is.
-
-    What returns carry follows from what is drawn; their gas is that of the last visit.
-    Returns the number of the first plume that could not be followed, or -1.
-    """
-    count = values.shape[0]
-    theta, salt = np.empty((2, count))
-    for i in range(count):
-        theta[i], salt[i] = values[i, TEMPERATURE], values[i, SALINITY]
-    inner = stability[1:count]
-    for q in range(held.sink.shape[0]):
-        held.take[int(held.sink[q, 0])] = 0.0
-    for q in range(held.sink.shape[0]):
-        flow = held.sink[q, 2]
-        shares = layer_shares(grid.face, inner, held.sink[q, 1], flow, SINK_COEFFICIENT)
-        held.take[int(held.sink[q, 0])] += flow * shares
-    for k in range(held.water.shape[0]):
-        ports = held.mouth[k, 0]
-        if ports == 0.0:
-            continue
-        warmth, salinity = held.added[k, TEMPERATURE], held.added[k, SALINITY]
-        for j in range(held.take.shape[0]):
-            warmth += held.link[k, j, TEMPERATURE] * (held.take[j] * theta).sum()
-            salinity += held.link[k, j, SALINITY] * (held.take[j] * salt).sum()
-        entrained, given, _, _, _, code = follow_plume(
-            grid.face,
-            theta,
-            salt,
-            gas_mass,
-            gas_volume,
-            grid.middle_pressure,
-            inner,
-            grid.physics[1],
-            grid.physics[0],
-            held.mouth[k, 1],
-            held.water[k],
-            warmth / held.water[k],
-            salinity / held.water[k],
-            held.mouth[k, 7],
-            held.mouth[k, 8],
-            ports,
-            held.mouth[k, 2],
-            held.mouth[k, 3],
-            grid.physics[3],
-            held.mouth[k, 4],
-        )
-        if code < 0:
-            return k
-        held.entrained[k], held.given[k] = entrained, given
-    fill_spans(held.take, held.take_span)
-    fill_spans(held.entrained, held.plume_span)
-    fill_spans(held.given, held.give_span)
-    return -1
-
-
-@compiled
-def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn, carried):
-    """Apply takes, gives, entrainment, outlet, rain and evaporation as one change of contents.
-
-    ``gain`` (n, m), ``withdrawn`` (j, m) and ``carried`` (m) are workspace.
-    """
-    count, tracers = values.shape
-    takes, gives = held.take.shape[0], held.water.shape[0]
-    for i in range(count):
-        for m in range(tracers):
-            gain[i, m] = 0.0
-    for j in range(takes):
-        for m in range(tracers):
-            withdrawn[j, m] = 0.0
-        for i in range(held.take_span[j, 0], held.take_span[j, 1]):
-            flow = held.take[j, i] * dt
-            for m in range(tracers):
-                amount = flow * values[i, m]
-                withdrawn[j, m] += amount
-                gain[i, m] -= amount
-        for m in range(tracers):
-            state.taken[j, m] += withdrawn[j, m]
-            state.books[INTAKE, m] -= withdrawn[j, m]
-    for k in range(gives):
-        kind = held.kind[k]
-        for m in range(tracers):
-            carried[m] = held.added[k, m] * dt
-            for j in range(takes):
-                carried[m] += held.link[k, j, m] * withdrawn[j, m]
-            state.books[kind, m] += carried[m]
-        for i in range(held.plume_span[k, 0], held.plume_span[k, 1]):
-            flow = held.entrained[k, i] * dt
-            for m in range(tracers):
-                amount = flow * values[i, m]
-                carried[m] += amount
-                gain[i, m] -= amount
-        for i in range(held.give_span[k, 0], held.give_span[k, 1]):
-            share = held.given[k, i]
-            for m in range(tracers):
-                gain[i, m] += share * carried[m]
-    for m in range(tracers):
-        amount = outlet * values[0, m] * dt
-        gain[0, m] -= amount
-        state.books[OUTLET, m] -= amount
-    # rain and evaporation carry heat at the temperature of the surface and nothing else
-    rain = held.air[3] * grid.area[0] * dt * values[0, TEMPERATURE]
-    lost = held.air[4] * grid.area[0] * dt * values[0, TEMPERATURE]
-    gain[0, TEMPERATURE] += rain - lost
-    state.books[RAIN, TEMPERATURE] += rain
-    state.books[EVAPORATION, TEMPERATURE] -= lost
-    return gain
-
-
-@compiled
 def breathe(values, grid, held, state, dt):
     """Exchange heat and gases with the air for one step.
 
@@ -317,16 +169,17 @@ def advance(state, grid, held, seen, steps, dt):
     _load(state, grid, held, gas_mass, gas_volume)
     _compare(values, grid, gas_mass, gas_volume, seen)
     _conduct(values, grid, held, seen, conductance, lift)
-    code, layer, parts, outlet = _route(grid, held, seen.flow, dt)
+    parts, layer, outlet = route(grid, held, seen.flow, dt)
     since = 0.0
     for step in range(steps):
-        if code == DONE and since >= FOLLOW_EVERY and len(held.sink) > 0:
-            layer = fit_plants(values, gas_mass, gas_volume, grid, held, seen.stability)
-            code, since = NOT_FOLLOWED, 0.0
-            if layer < 0:
-                code, layer, parts, outlet = _route(grid, held, seen.flow, dt)
-        if code != DONE:
-            return code, step, layer, 0
+        if since >= FOLLOW_EVERY and len(held.sink) > 0:
+            lost = fit_plants(values, gas_mass, gas_volume, grid, held, seen.stability)
+            if lost >= 0:
+                return NOT_FOLLOWED, step, lost, 0
+            parts, layer, outlet = route(grid, held, seen.flow, dt)
+            since = 0.0
+        if parts == 0:
+            return OVERDRAWN, step, layer, 0
         since += dt
         breathe(values, grid, held, state, dt)
         react(
@@ -419,31 +272,6 @@ def _compare(values, grid, gas_mass, gas_volume, seen):
         grid.physics,
         seen.stability,
     )
-
-
-@compiled
-def _route(grid, held, flow, dt):
-    """Find the flow through the faces, and how many parts a step needs for it.
-
-    Returns (code, layer, parts, outlet): OVERDRAWN where a layer would give more than it holds
-    however a step is parted, and what leaves at the surface [m3 s-1].
-    """
-    face_flow(held, flow)
-    outlet = flow[0] + (held.air[3] - held.air[4]) * grid.area[0]
-    worst, where = 0.0, 0
-    for i in range(grid.volume.shape[0]):
-        out = max(flow[i], 0.0) if i > 0 else max(outlet, 0.0)
-        out += max(-flow[i + 1], 0.0)
-        for j in range(held.take.shape[0]):
-            out += held.take[j, i]
-        for k in range(held.entrained.shape[0]):
-            out += held.entrained[k, i]
-        if out / grid.volume[i] > worst:
-            worst, where = out / grid.volume[i], i
-    parts = int(np.ceil(worst * dt / 0.5))
-    if parts > 1000:
-        return OVERDRAWN, where, 0, outlet
-    return DONE, where, max(parts, 1), outlet
 
 
 @compiled

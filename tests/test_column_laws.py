@@ -19,8 +19,8 @@ from column_checks import (
 )
 
 from strata.column.column import REFERENCE_DENSITY, Column
-from strata.column.ledger import LEDGER_TERMS
 from strata.column.laws import MIXING_EFFICIENCY, bed_coefficient, law_of, staircase_window
+from strata.column.ledger import LEDGER_TERMS
 from strata.column.mixing import turbulent_diffusivity
 from strata.column.tracers import DIC, METHANE, TEMPERATURE, TRACERS, index
 from strata.lake.basin import build_basin

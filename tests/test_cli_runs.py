@@ -131,3 +131,15 @@ def test_the_demo_runs_and_runs_again(tmp_path, monkeypatch):
     assert again.exit_code == 0, again.stderr
     assert "lake.toml: differs from the demo's and is used as it is" in again.stderr
     assert lake.read_text().endswith("# my own remark\n")
+
+
+def test_compare_draws_the_years_of_a_seed(folder):
+    folder.spoil(folder.lake, "[climate]", "[climate]\nwind_variability_share = 0.3")
+
+    def thickness(seed):
+        result = run("compare", folder.lake, folder.plan, "--json", "--seed", seed, *SHORT)
+        assert result.exit_code == 0, result.stderr
+        return json.loads(result.stdout)["plans"]["lake left alone"]
+
+    assert thickness(1) == thickness(1)
+    assert thickness(1) != thickness(2)

@@ -18,6 +18,7 @@ from strata.cli import BREACHED, options
 )
 @options.years
 @options.step_days
+@options.seed
 @options.limits
 @options.strict
 @options.as_json
@@ -29,6 +30,7 @@ def command(
     out: Path | None,
     years: float,
     step_days: float,
+    seed: int,
     limits: Path | None,
     strict: bool,
     as_json: bool,
@@ -43,8 +45,7 @@ def command(
     """
     from strata.cli.comparing import run
 
-    breached = run(
-        lake, plans, options.limits_file(lake, limits), out, years, step_days, as_json
-    )
+    rules = options.limits_file(lake, limits)
+    breached = run(lake, plans, rules, out, years, step_days, as_json, seed)
     if strict and breached:
         ctx.exit(BREACHED)

@@ -25,6 +25,7 @@ def run(
     years: float,
     step_days: float,
     as_json: bool,
+    seed: int = 0,
 ) -> bool:
     """Compare plans, write what was asked for, print the verdicts.
 
@@ -44,13 +45,20 @@ def run(
             output.writable_file(path)
     with terminal.progress(f"{len(names)} projections of {years:g} years") as progress:
         found = compare(
-            site, operators, rules, years=years, step_days=step_days, progress=progress
+            site,
+            operators,
+            rules,
+            years=years,
+            step_days=step_days,
+            seed=seed,
+            progress=progress,
         )
     for name, path in files.items():
         results.write(found.results[name], path)
     if out and rules is not None:
         words = ["strata", "compare", str(lake), *map(str, plans), "--limits", str(limits)]
-        words += ["--years", f"{years:g}", "--step-days", f"{step_days:g}", "-o", str(out)]
+        words += ["--years", f"{years:g}", "--step-days", f"{step_days:g}"]
+        words += ["--seed", str(seed), "-o", str(out)]
         dossier(
             found.results,
             found.verdicts,

@@ -302,6 +302,17 @@ def today(result: xr.Dataset, lake: Lake) -> Figure:
     plot.gas_pressure(first, pressing)
     plot.measured_points(_scaled(sampled["gas_pressure"], BAR), pressing)
     saturated.axvline(1.0, **LIMIT_STYLE)
+    saturated.annotate(
+        "bubbles",
+        (1.0, 0.98),
+        xycoords=("data", "axes fraction"),
+        xytext=(-4, 0),
+        textcoords="offset points",
+        ha="right",
+        va="top",
+        rotation=90,
+        fontsize="small",
+    )
     saturated.set_xlim(0.0, 1.05 * max(1.0, float(sampled["saturation"].value.max())))
     for ax in axes.flat:
         ax.axhspan(*_main_extent(first), color="0.85", zorder=0, label="main gradient")

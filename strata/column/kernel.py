@@ -81,8 +81,7 @@ class Held(NamedTuple):
     entrained: Array  # (k, n) m3/s taken along on the way
     given: Array  # (k, n) share of give k that each layer gets
     sink: Array  # (q, 3) take that it feeds, depth m, flow m3/s
-    mouth: Array  # (k, 9) ports, depth, diameter, spacing, angle; theta, salinity, gas mass,
-    # gas volume; no ports: not followed
+    mouth: Array  # (k, 7) ports, depth, width, spacing, angle; gas mass, gas volume
     take_span: NDArray[np.int64]  # (j, 2) first layer of take j, and the one behind its last
     plume_span: NDArray[np.int64]  # (k, 2) the same of what give k takes along
     give_span: NDArray[np.int64]  # (k, 2) and of where it ends

@@ -61,7 +61,6 @@ class Path:
     trap_depth: float  # m
     end_depth: float  # m, the furthest it reached
     dilution: float
-    reached: str  # "", "surface" or "floor"
     above_outlet: float  # share of the source that ends above its outlet
 
 
@@ -122,7 +121,7 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
             f" (code {code})"
         )
     above = float(given[around.basin.depth < source.depth].sum())
-    return Path(entrained, given, trap, end, dilution, ("", "surface", "floor")[code], above)
+    return Path(entrained, given, trap, end, dilution, above)
 
 
 @dataclass(frozen=True)
@@ -158,10 +157,9 @@ def fill_spans(shares, spans):
 def _mouth(source: Source | None) -> tuple[float, ...]:
     """Return what the kernel must know of a source to follow it; nothing of none."""
     if source is None:
-        return (0.0,) * 9
+        return (0.0,) * 7
     ports = (source.ports, source.depth, source.port_diameter, source.port_spacing)
-    water = (source.temperature, source.salinity, source.gas_mass, source.gas_volume)
-    return (*ports, math.radians(source.port_angle), *water)
+    return (*ports, math.radians(source.port_angle), source.gas_mass, source.gas_volume)
 
 
 def _spans(shares: Array) -> NDArray[np.int64]:
@@ -191,7 +189,7 @@ def stack(takes: Sequence[Take], gives: Sequence[Give], layers: int, tracers: in
         entrained=entrained,
         given=given,
         sink=np.array(sinks, dtype=np.float64).reshape(-1, 3),
-        mouth=np.array([_mouth(give.source) for give in gives]).reshape(-1, 9),
+        mouth=np.array([_mouth(give.source) for give in gives]).reshape(-1, 7),
         kind=np.array([give.kind for give in gives], dtype=np.int64),
         take_span=_spans(take),
         plume_span=_spans(entrained),

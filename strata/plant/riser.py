@@ -26,18 +26,12 @@ from numpy.typing import NDArray
 from scipy.optimize import brentq
 
 from strata.compiled import compiled
-from strata.constants import GAS_CONSTANT, WATER_MASS, ZERO_CELSIUS
-from strata.errors import ComputationError, OutOfRangeError
+from strata.errors import ComputationError
 from strata.gas import Laws
-from strata.gas import columns as at
-from strata.gas.bubble import bubble_rows, checked_gases
-from strata.gas.flash import BOILS, flash_rows
-from strata.gas.mixture import attraction_roots, fugacity_rows
-from strata.gas.table import gas_table
+from strata.gas.bubble import checked_gases
 from strata.plant.plan import Riser
-from strata.species import SPECIES
-from strata.water.density import HALINE_CONTRACTION, density, in_situ_density
-from strata.water.transport import dynamic_viscosity_at
+from strata.plant.release import POINTS, Train, train_of
+from strata.water.density import density
 
 Array = NDArray[np.float64]
 
@@ -45,7 +39,6 @@ DISTRIBUTION = 1.2  # C0 of Zuber & Findlay 1965 for round pipes
 DRIFT_FACTOR = 1.53  # of the rise velocity in churning flow, same source
 SURFACE_TENSION = 0.072  # N/m, water at 25 degC (IAPWS R1-76)
 ENTRY_LOSS = 0.5  # velocity heads lost where water enters a pipe with a sharp edge
-POINTS = 121  # pressures at which the pipe is looked at, for its profile
 FEW_POINTS = 16  # for the pressure of a pump alone, which is within 300 Pa with them
 SLOWEST, FASTEST = 0.02, 30.0  # m/s of water at the foot, between which a flow is sought
 
@@ -74,22 +67,6 @@ class RiserFlow:
     void: Array
     water_velocity: Array  # m/s
     gas_velocity: Array  # m/s
-
-
-@dataclass(frozen=True)
-class _Train:
-    """What comes out of the water as pressure falls, and the pipe it comes out in."""
-
-    pressure: Array  # falling, from where gas first comes out to that of the separator
-    gas_volume: Array  # m3 of gas per m3 of water
-    gas_density: Array
-    water_density: float
-    viscosity: float
-    gravity: float
-    bore: float
-    roughness: float
-    foot_pressure: float  # Pa in the lake at the intake
-    length: float
 
 
 @compiled
@@ -187,7 +164,7 @@ def _rise(
     return end, choked
 
 
-def _course(speed: float, train: _Train) -> _Course:
+def _course(speed: float, train: Train) -> _Course:
     """Follow the pressure down for one superficial velocity of the water [m/s]."""
     height, void = np.empty_like(train.pressure), np.empty_like(train.pressure)
     end, choked = _rise(
@@ -208,7 +185,7 @@ def _course(speed: float, train: _Train) -> _Course:
     return _Course(height, void, speed / (1.0 - void), gas_speed, end, choked)
 
 
-def _single_phase(speed: float, train: _Train) -> tuple[float, float]:
+def _single_phase(speed: float, train: Train) -> tuple[float, float]:
     """Return pressure lost per metre of full water [Pa/m] and at the entry [Pa]."""
     head = 0.5 * train.water_density * speed**2
     reynolds = train.water_density * speed * train.bore / train.viscosity
@@ -216,7 +193,7 @@ def _single_phase(speed: float, train: _Train) -> tuple[float, float]:
     return train.water_density * train.gravity + drag, (1.0 + ENTRY_LOSS) * head
 
 
-def _pump_pressure(speed: float, train: _Train, course: _Course | None = None) -> float:
+def _pump_pressure(speed: float, train: Train, course: _Course | None = None) -> float:
     """Return what must be added at the foot [Pa] to bring the flow to the separator."""
     course = course or _course(speed, train)
     per_metre, entry = _single_phase(speed, train)
@@ -231,7 +208,7 @@ def _pump_pressure(speed: float, train: _Train, course: _Course | None = None) -
     return float(outlet - within) + entry
 
 
-def _self_lifted_speed(train: _Train) -> float:
+def _self_lifted_speed(train: Train) -> float:
     """Return the largest velocity [m/s] that needs no pump; 0 where there is none."""
     speeds = np.geomspace(SLOWEST, FASTEST, 60)
     needs = np.array([_pump_pressure(speed, train) for speed in speeds])
@@ -246,114 +223,6 @@ def _self_lifted_speed(train: _Train) -> float:
     return float(
         brentq(_pump_pressure, speeds[last], speeds[last + 1], args=(train,), xtol=1e-6)
     )
-
-
-@compiled
-def _release(t, s, amounts, outlet, masses, rows, pairs, laws, pressure, volume, weight):
-    """Fill what comes out of water as pressure falls from its bubble point to the outlet.
-
-    amounts is (1, gases) [mol m-3]; pressure [Pa] falls in even ratios; volume is m3 of gas
-    per m3 of water, weight the density of the gas; where nothing comes out, of the first
-    bubble.  Returns the bubble pressure and a code of the flash.
-    """
-    n, m = pressure.size, rows.shape[0]
-    one, code = np.zeros(1), np.zeros(1, dtype=np.int64)
-    first = np.zeros((1, m))
-    bubble_rows(np.full(1, t), np.full(1, s), amounts, rows, pairs, laws, one, first, code)
-    if code[0] != 0:
-        return one[0], code[0]
-    ratio = max(one[0] / outlet, 1.0 + 1e-7) ** (1.0 / (n - 1))
-    for k in range(n):
-        pressure[k] = outlet * ratio ** (n - 1 - k)
-    moles, y, codes = np.zeros(n), np.zeros((n, m)), np.zeros(n, dtype=np.int64)
-    feed = np.empty((n, m - 1))
-    feed[:] = amounts[0]
-    flash_rows(
-        np.full(n, t),
-        np.full(n, s),
-        pressure,
-        np.zeros(n),
-        feed,
-        -1,
-        rows,
-        pairs,
-        laws,
-        moles,
-        y,
-        codes,
-    )
-    roots, work, ln_phi = np.empty(m), np.empty(m), np.empty(m)
-    attraction_roots(t, rows, roots)
-    for k in range(n):
-        if codes[k] != 0:
-            return one[0], codes[k]
-        if moles[k] <= 0.0:
-            y[k] = first[0]
-        z = 1.0
-        if laws[at.REAL_GAS] != 0.0:
-            z = fugacity_rows(t, pressure[k], y[k], rows, roots, pairs, work, ln_phi)
-        mass, total = 0.0, 0.0
-        for i in range(m):
-            mass += y[k, i] * masses[i]
-            total += y[k, i]
-        molar_volume = z * GAS_CONSTANT * (t + ZERO_CELSIUS) / pressure[k]
-        volume[k] = moles[k] * molar_volume
-        weight[k] = mass / max(total, 1e-300) / molar_volume
-    return one[0], 0
-
-
-def _train_of(
-    riser: Riser,
-    temperature: float,
-    salinity: float,
-    gases: Mapping[str, float],
-    outlet: float,
-    foot: float,
-    length: float,
-    gravity: float,
-    laws: Laws | None,
-    points: int = POINTS,
-) -> tuple[_Train, float]:
-    """Return what comes out below the bubble point, and the bubble pressure."""
-    table = gas_table(gases, Laws.of(laws))
-    amounts = np.array([[float(amount) for amount in gases.values()]])
-    masses = [SPECIES[gas].molar_mass for gas in table.gases]
-    pressure, volume, weight = np.empty(points), np.empty(points), np.empty(points)
-    bubble, code = _release(
-        temperature,
-        salinity,
-        amounts,
-        outlet,
-        np.array([*masses, WATER_MASS]),
-        table.rows,
-        table.pairs,
-        table.laws,
-        pressure,
-        volume,
-        weight,
-    )
-    if code == BOILS:
-        raise OutOfRangeError(
-            f"riser: outlet pressure is {outlet:g} Pa; water of {temperature:.1f} degC boils"
-        )
-    if code != 0:
-        raise ComputationError(
-            f"riser: no equilibrium found between {outlet:g} Pa and {bubble:g} Pa"
-        )
-    water = in_situ_density(temperature, salinity, outlet, 0.0, 0.0, HALINE_CONTRACTION)
-    train = _Train(
-        pressure,
-        volume,
-        weight,
-        float(water),
-        float(dynamic_viscosity_at(temperature)),
-        gravity,
-        riser.bore,
-        riser.roughness,
-        foot,
-        length,
-    )
-    return train, bubble
 
 
 def lift(
@@ -394,7 +263,7 @@ def lift(
     """
     checked_gases(temperature, salinity, gases)
     length = depth + riser.separator_height
-    train, bubble = _train_of(
+    train, bubble = train_of(
         riser,
         temperature,
         salinity,
@@ -437,7 +306,7 @@ def lift(
     )
 
 
-def _profile(speed: float, train: _Train, course: _Course, depth: float) -> tuple[Array, ...]:
+def _profile(speed: float, train: Train, course: _Course, depth: float) -> tuple[Array, ...]:
     """Return depth, pressure, void, velocities of water and gas from the foot to the top."""
     reached = slice(course.end + 1)
     height = course.height[reached]
@@ -477,7 +346,7 @@ def pump_pressure(
     speed = flow / (riser.pipes * 0.25 * math.pi * riser.bore**2)
     water = (temperature, salinity, gases)
     for points in (FEW_POINTS, POINTS):
-        train, _ = _train_of(
+        train, _ = train_of(
             riser, *water, outlet_pressure, foot_pressure, length, gravity, laws, points
         )
         course = _course(speed, train)
@@ -487,7 +356,7 @@ def pump_pressure(
 
 
 def _startup_pressure(
-    train: _Train,
+    train: Train,
     bubble: float,
     temperature: float,
     salinity: float,

@@ -7,6 +7,7 @@ from datetime import date
 
 import numpy as np
 
+from strata.column.ledger import LEDGER_TERMS
 from strata.column.tracers import TRACERS
 from strata.lake.site import (
     Cast,
@@ -22,17 +23,7 @@ from strata.lake.site import (
 from strata.plant.plan import Plan, Plant, Return, Stage
 from strata.results import Record
 
-TERMS = (
-    "start",
-    "surface",
-    "outlet",
-    "rivers",
-    "springs",
-    "bed",
-    "reactions",
-    "intake",
-    "return",
-)
+TERMS = ("start", *LEDGER_TERMS)
 
 
 def lake(layers: int = 250) -> Lake:

@@ -11,10 +11,10 @@ too weak there.
 """
 
 from datetime import date
-from pathlib import Path
 
 import numpy as np
 import pytest
+from measured import profile, table
 
 import strata
 from strata.lake.site import (
@@ -24,32 +24,20 @@ from strata.lake.site import (
     Hypsography,
     Lake,
     Mixing,
-    Profile,
     Reactions,
     Site,
 )
 from strata.plant.plan import Plan, Plant, Return, Stage
 
-HERE = Path(__file__).parent
 AIR_PRESSURE = 0.89e5  # Pa
 YEAR = 365.25 * 86400.0  # s
 GIGAMOL = 1e9
 WATER = 998.0  # kg/m3, to turn mol/kg into mol/m3
 
 
-def initial():
-    """Return the columns of the initial state."""
-    lines = (HERE / "co2_lake_2001_initial.csv").read_text().splitlines()
-    return np.genfromtxt([line for line in lines if line[0] != "#"], delimiter=",", names=True)
-
-
-def profile(depth, value):
-    return Profile(depth, np.asarray(value, dtype=float), np.zeros(len(depth)))
-
-
 def lake_of_2001(recharge):
     """Return the lake with a recharge [Gmol/yr] through the bed from 195 to 205 m."""
-    state = initial()
+    state = table("co2_lake_2001_initial.csv")
     depth, carbon = state["depth_m"], state["CO2_mol_kg"]
     fine = np.arange(0.0, 208.1, 0.5)  # area and carbon are linear between the points
     area = np.interp(fine, depth, state["area_km2"] * 1e6)

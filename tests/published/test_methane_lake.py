@@ -5,10 +5,9 @@ March 2018 (Baerenbold et al. 2020, PLoS ONE 15(8):e0237836); hypsography recall
 scaled to the published area, depth and volume (Schmid & Wuest 2012).
 """
 
-from pathlib import Path
-
 import numpy as np
 import pytest
+from measured import table
 from scipy.interpolate import PchipInterpolator
 
 import strata
@@ -17,16 +16,9 @@ from strata.compiled import broadcast
 from strata.water.density import potential_temperature, thermal_expansion
 from strata.water.transport import kinematic_viscosity, thermal_diffusivity
 
-HERE = Path(__file__).parent
 AIR_PRESSURE = 0.86e5  # Pa at 1,462 m, standard atmosphere
 GRAVITY = 9.78  # m s-2 near the equator
 CO2_VOLUME = 31.5e-6  # m3/mol, the value of the lake's own data base
-
-
-def table(name):
-    """Return the columns of one table; blanks become NaN."""
-    lines = [line for line in (HERE / name).read_text().splitlines() if line[0] != "#"]
-    return np.genfromtxt(lines, delimiter=",", names=True)
 
 
 @pytest.fixture(scope="module")

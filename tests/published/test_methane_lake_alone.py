@@ -11,7 +11,8 @@ from datetime import date
 
 import numpy as np
 import pytest
-from test_methane_lake import AIR_PRESSURE, CO2_VOLUME, table
+from measured import profile, table
+from test_methane_lake import AIR_PRESSURE, CO2_VOLUME
 
 import strata
 from strata.lake.site import (
@@ -21,7 +22,6 @@ from strata.lake.site import (
     Hypsography,
     Lake,
     Mixing,
-    Profile,
     Reactions,
     Site,
     Spring,
@@ -35,10 +35,6 @@ SPRINGS = (
     ("cool", 256.0, 23.2, 2.6, 0.0, 0.3),
     ("upper", 190.0, 23.2, 2.0, 0.0, 0.1),
 )
-
-
-def profile(depth, value):
-    return Profile(depth, np.asarray(value, dtype=float), np.zeros(len(depth)))
 
 
 def lake_of_2018(flows):

@@ -15,7 +15,7 @@ from strata.column.air import air_table
 from strata.column.inflows import Inflow, even_shares
 from strata.column.laws import bed_coefficient, law_of, staircase_window
 from strata.column.slow import SlowProperties, slow_properties
-from strata.column.streams import Give, Source, Surroundings, Take, stack
+from strata.column.streams import Give, Source, Surroundings, Take, not_followed, stack
 from strata.column.supply import supply_of
 from strata.column.surface import wind_power
 from strata.column.tracers import (
@@ -449,9 +449,9 @@ class Column:
         if code == kernel.NOT_FINITE:
             raise self._not_a_number(layer, tracer)
         if code == kernel.NOT_FOLLOWED:
-            raise ComputationError(
-                f"the plume of {gives[layer].source.name} could not be followed"
-            )
+            lost = gives[layer].source
+            assert lost is not None  # only plumes of sources are followed
+            raise not_followed(lost)
         if code == kernel.OVERDRAWN:
             raise ComputationError(
                 f"more water would leave the layer at {self.basin.depth[layer]:.1f} m in a"

@@ -170,4 +170,3 @@ def exchange_with_streams(values, grid, held, dt, state, outlet, gain, withdrawn
     gain[0, TEMPERATURE] += rain - lost
     state.books[RAIN, TEMPERATURE] += rain
     state.books[EVAPORATION, TEMPERATURE] -= lost
-    return gain

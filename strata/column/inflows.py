@@ -1,5 +1,6 @@
 """How springs and rivers enter the column: as plumes, over an interval, or along the bed."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -69,28 +70,24 @@ def plunge(source: Source, around: Surroundings, mixing: float) -> tuple[Array, 
     top = tuple(profile[0] for profile in lake)
     given, entrained = np.zeros_like(around.temperature), np.zeros_like(around.temperature)
 
-    def surface_density(water: tuple[float, ...]) -> float:
+    def density(water: Sequence[ArrayLike], pressure: ArrayLike) -> Array:
         theta, salt, mass, space = water
-        return float(
-            parcel_density(
-                theta, salt, around.pressure[0], mass, space, around.haline_contraction
+        return np.asarray(
+            broadcast(parcel_density)(
+                theta, salt, pressure, mass, space, around.haline_contraction
             )
         )
 
-    if source.flow <= 0.0 or surface_density(own) <= surface_density(top):
+    surface = around.pressure[0]
+    if source.flow <= 0.0 or density(own, surface) <= density(top, surface):
         given[0] = 1.0
         return given, entrained
     share = mixing / (1.0 + mixing)
     mixture = [part + share * (there - part) for part, there in zip(own, top, strict=True)]
 
-    def density(theta: ArrayLike, salt: ArrayLike, mass: ArrayLike, space: ArrayLike) -> Array:
-        return np.asarray(
-            broadcast(parcel_density)(
-                theta, salt, around.pressure, mass, space, around.haline_contraction
-            )
-        )
-
-    heavier = np.flatnonzero(density(*lake) >= density(*mixture))
+    heavier = np.flatnonzero(
+        density(lake, around.pressure) >= density(mixture, around.pressure)
+    )
     entrained[0] = mixing * source.flow
     if len(heavier) == 0:
         given[-1] = 1.0

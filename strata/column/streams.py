@@ -85,6 +85,13 @@ class Give:
     source: Source | None = None  # whose plume is followed anew within a visit
 
 
+def not_followed(source: Source) -> ComputationError:
+    """Return the error for a source whose plume did not end."""
+    return ComputationError(
+        f"the plume of {source.name} from {source.depth:g} m could not be followed"
+    )
+
+
 def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
     """Return the path of the plume of a source through the column as it is.
 
@@ -116,10 +123,7 @@ def follow(source: Source, around: Surroundings, overshoot: float) -> Path:
         math.radians(source.port_angle),
     )
     if code < 0:
-        raise ComputationError(
-            f"the plume of {source.name} from {source.depth:g} m could not be followed"
-            f" (code {code})"
-        )
+        raise not_followed(source)
     above = float(given[around.basin.depth < source.depth].sum())
     return Path(entrained, given, trap, end, dilution, above)
 
